@@ -1,0 +1,1 @@
+"""What stands on the bench: the body, its material, the air, the flow, the thermometer, and the set-up file."""

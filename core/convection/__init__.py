@@ -1,0 +1,1 @@
+"""Dimensionless numbers and published correlations, one file a family."""

@@ -1,0 +1,1 @@
+"""To the laptop and back: CSV with metadata, folders, reports."""

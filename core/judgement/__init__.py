@@ -1,0 +1,1 @@
+"""How sure a result is, whether to keep the run, and the law over many runs."""
