@@ -144,7 +144,7 @@ class Surrounding:
         "K",
         0.0,
         10.0,
-        "Standard uncertainty of the air temperature against the body's thermometer, both compared in the same air.",
+        "Standard uncertainty of the air temperature against the body's thermometer, compared in one air.",
         default=0.02,
         typical="0.01 to 0.1",
     )
@@ -165,7 +165,7 @@ class Surrounding:
 
 @dataclass(frozen=True, slots=True)
 class Flow:
-    """The stream, before it meets the body. One of velocity, velocity readings, dynamic pressure or volume flow."""
+    """The undisturbed stream, by velocity, several readings of it, dynamic pressure or volume flow."""
 
     velocity_m_s: float | None = number(
         "m/s", 0.0, 120.0, "Velocity of the undisturbed stream.", default=None, typical="4 to 14"
