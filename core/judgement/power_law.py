@@ -81,7 +81,9 @@ def fit_line(x: Vector, y: Vector, joint: Vector) -> Line:
     """
     n = len(x)
     if n < 2 or float(np.ptp(x)) < 1e-9:
-        raise NoAnswer("A law over speeds needs runs at two different speeds at least; measure one more speed.")
+        raise NoAnswer(
+            "A law over speeds needs runs at two different speeds at least; measure one more speed."
+        )
     intercept, slope, spread, chi_square = _solve(x, y, joint, 0.0)
     scatter = 0.0
     if n > 2 and chi_square_tail(chi_square, n - 2) < SIGNIFICANCE:
