@@ -1,0 +1,37 @@
+"""What this device has, found once at start."""
+
+from __future__ import annotations
+
+import os
+from pathlib import Path
+
+from mobileapp.device.clock import SystemClock
+from mobileapp.device.haptics import find_haptics
+from mobileapp.device.ports import Device
+from mobileapp.device.screen import WindowScreen
+from mobileapp.device.sound import find_sounds
+from mobileapp.device.stamps import best_source
+
+
+def on_android() -> bool:
+    return "ANDROID_ARGUMENT" in os.environ
+
+
+def find_device(data: Path) -> Device:
+    """Choose the adapters, and say once what is absent."""
+    haptics = find_haptics(on_android())
+    sounds = find_sounds()
+    missing = []
+    if not haptics.available:
+        missing.append("This device does not vibrate: taps are confirmed by light and sound.")
+    if not sounds.available:
+        missing.append("No sound device was found: taps and beats are shown by light only.")
+    return Device(
+        clock=SystemClock(),
+        stamps=best_source(on_android()),
+        haptics=haptics,
+        sounds=sounds,
+        screen=WindowScreen(),
+        data=data,
+        missing=tuple(missing),
+    )

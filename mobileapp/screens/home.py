@@ -1,0 +1,78 @@
+"""Home: the session at hand with its runs, and the way to everything else."""
+
+from __future__ import annotations
+
+from typing import Any
+
+from kivy.properties import BooleanProperty, StringProperty
+
+from mobileapp.labels import bench_line
+from mobileapp.navigation import Page
+from mobileapp.widgets import badge, basics  # noqa: F401  the .kv of this screen uses them
+from mobileapp.widgets.basics import PlainPress, SmallWords
+from mobileapp.widgets.run_row import RunListHead, rows_for
+from mobileapp.words import _
+
+FEWEST_SPEEDS = 3
+
+
+class HomeScreen(Page):
+    """Runs of the session, newest first; older sessions below."""
+
+    session_title = StringProperty("")
+    bench_words = StringProperty("")
+    next_words = StringProperty("")
+    has_bench = BooleanProperty(False)
+    has_runs = BooleanProperty(False)
+    invented = BooleanProperty(False)
+    notice = StringProperty("")
+
+    def arrive(self, **_aim: Any) -> None:
+        self.model.bind(session=self._show, sessions=self._show)
+        self._show()
+
+    def leave(self) -> None:
+        self.model.unbind(session=self._show, sessions=self._show)
+
+    def _show(self, *_args: Any) -> None:
+        session = self.model.session
+        self.has_bench = session is not None and session.setup is not None
+        self.has_runs = session is not None and bool(session.runs)
+        self.invented = session is not None and session.invented
+        self.session_title = session.title if session else _("No session yet")
+        self.bench_words = bench_line(session.setup) if self.has_bench else _("Say what stands on your bench first.")
+        speed = self.model.next_velocity_m_s()
+        self.next_words = speed and _("A good next speed: about {speed} m/s.").format(speed=speed)
+        self._list_runs(session)
+        self._list_sessions()
+
+    def _list_runs(self, session: Any) -> None:
+        box = self.ids.runs
+        box.clear_widgets()
+        if not self.has_runs:
+            return
+        box.add_widget(RunListHead())
+        for row in rows_for(list(reversed(session.runs))):
+            row.bind(on_release=lambda pressed: self.open_run(pressed.run))
+            box.add_widget(row)
+
+    def _list_sessions(self) -> None:
+        box = self.ids.sessions
+        box.clear_widgets()
+        current = self.model.session.session if self.model.session else ""
+        others = [s for s in self.model.sessions if s.session != current]
+        if others:
+            box.add_widget(SmallWords(text=_("Other sessions")))
+        for session in others:
+            mark = _("invented") + " · " if session.invented else ""
+            text = f"{session.title}\n[size={int(0.8 * self.ids.bench.font_size)}]{mark}{session.started[:10]}[/size]"
+            button = PlainPress(text=text)
+            button.bind(on_release=lambda _b, key=session.session: self.model.open_session(key))
+            box.add_widget(button)
+
+    def open_run(self, run: str) -> None:
+        self.go("answer", run=run)
+
+    def start(self) -> None:
+        """The next run, by way of the bench where there is none."""
+        self.go("before" if self.has_bench else "bench")

@@ -1,0 +1,74 @@
+"""What the model hands to the screens: frozen, and with no way back into the model."""
+
+from __future__ import annotations
+
+from dataclasses import dataclass
+
+from core.bench.setup import Setup
+from core.judgement.answer import Answer
+
+
+@dataclass(frozen=True, slots=True)
+class RunView:
+    """One run of a session. `verdict` is the answer's, `decision` the person's with its `reason`; both are empty
+    where there is none yet."""
+
+    run: str
+    number: int
+    kind: str  # forced | still-air | rehearsal
+    mode: str  # change | beat
+    started: str
+    open: bool
+    readings: int
+    velocity_m_s: float | None
+    h_W_m2K: float | None
+    h_U95_W_m2K: float | None
+    verdict: str
+    decision: str
+    reason: str
+
+
+@dataclass(frozen=True, slots=True)
+class SessionView:
+    """One session: a bench and its runs. `invented` marks the demo."""
+
+    session: str
+    title: str
+    started: str
+    setup: Setup | None
+    invented: bool
+    runs: tuple[RunView, ...]
+
+
+@dataclass(frozen=True, slots=True)
+class LiveFit:
+    """The newest fit while a run goes on, or why there is none yet."""
+
+    answer: Answer | None
+    waiting_for: str
+    readings: int
+
+
+@dataclass(frozen=True, slots=True)
+class PadView:
+    """The running run as the pad shows it.
+
+    `state` is `waiting` before the first reading, `running`, or `ended`. `shown_C` is the newest reading that
+    counts, `next_C` the one that a single touch would add. `marks` are what was marked so far."""
+
+    run: str
+    kind: str
+    mode: str
+    state: str
+    shown_C: float | None
+    next_C: float | None
+    resolution_K: float
+    readings: int
+    elapsed_from_s: float | None
+    can_undo: bool
+    marks: tuple[str, ...]
+    start_C: float | None
+    floor_C: float
+    target_C: float | None
+    beat_s: float
+    digits: int

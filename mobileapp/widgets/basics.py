@@ -1,0 +1,116 @@
+"""Words, sheets and buttons in the app's own look. They hold no knowledge of cooling."""
+
+from __future__ import annotations
+
+from pathlib import Path
+from typing import Any
+
+from kivy.graphics.texture import Texture
+from kivy.lang import Builder
+from kivy.properties import BooleanProperty, ColorProperty, ObjectProperty, StringProperty
+from kivy.uix.behaviors import ButtonBehavior
+from kivy.uix.boxlayout import BoxLayout
+from kivy.uix.label import Label
+from kivy.uix.scrollview import ScrollView
+from kivy.uix.widget import Widget
+
+from mobileapp.contrast import mixed
+from mobileapp.theme import look
+
+
+class Words(Label):
+    """Text that wraps within its width and is as tall as it needs."""
+
+
+class SoftWords(Words):
+    """Text of the second rank."""
+
+
+class SmallWords(Words):
+    """Help and footnotes."""
+
+
+class LeadWords(Words):
+    """The first sentence of a screen."""
+
+
+class TitleWords(Words):
+    """A heading."""
+
+
+class Sheet(BoxLayout):
+    """A plate with a thin edge that holds what belongs together."""
+
+    ground = ColorProperty(look.panel)
+
+    def __init__(self, **options: Any) -> None:
+        self._own_ground = "ground" in options
+        super().__init__(**options)
+        if not self._own_ground:
+            look.bind(panel=self.setter("ground"))
+            self.ground = look.panel
+
+
+class Press(ButtonBehavior, Label):
+    """What can be pressed; at least as tall as a finger's target."""
+
+    rim = ColorProperty((0, 0, 0, 0))
+    fill = ColorProperty((0, 0, 0, 0))
+
+
+class PlainPress(Press):
+    """An outlined button."""
+
+
+class MainPress(Press):
+    """The one thing to do next."""
+
+
+class QuietPress(Press):
+    """A button that keeps in the background."""
+
+
+class ChoicePress(Press):
+    """One of several choices; filled when chosen."""
+
+    chosen = BooleanProperty(False)
+
+
+class CoolingStrip(Widget):
+    """The mark of the app: a strip from ember to cool."""
+
+    texture = ObjectProperty(None, allownone=True)
+
+    def __init__(self, **options: Any) -> None:
+        super().__init__(**options)
+        self._paint()
+        look.bind(ember=self._paint, cool=self._paint)
+
+    def _paint(self, *_args: Any) -> None:
+        width = 128
+        texture = Texture.create(size=(width, 1), colorfmt="rgb")
+        row = bytearray()
+        for i in range(width):
+            # the colour follows an excess temperature that falls exponentially along the strip
+            share = 1.0 - 2.718281828 ** (-3.2 * i / (width - 1))
+            row += bytes(round(255 * channel) for channel in mixed(tuple(look.ember), tuple(look.cool), share)[:3])
+        texture.blit_buffer(bytes(row), colorfmt="rgb", bufferfmt="ubyte")
+        self.texture = texture
+
+
+class TopBand(BoxLayout):
+    """Title of a screen, with the way back."""
+
+    title = StringProperty("")
+    with_back = BooleanProperty(True)
+    __events__ = ("on_back",)
+
+    def on_back(self) -> None:
+        """Someone wants to go back."""
+
+
+class Scroll(ScrollView):
+    """A page that is longer than the screen."""
+
+
+Builder.load_file(str(Path(__file__).with_suffix(".kv")))

@@ -1,0 +1,77 @@
+"""Places one large part in the middle and glove-sized buttons along the edges far from the tapping thumb."""
+
+from __future__ import annotations
+
+from typing import Any
+
+from kivy.properties import OptionProperty
+from kivy.uix.layout import Layout
+
+from mobileapp.theme import look
+
+
+class EdgeLayout(Layout):
+    """The child with `role = "middle"` gets the room that is left; the others, in the order in which they were
+    added, go to a column (wide) or a row on top (upright) on the side away from `hand`. Where they do not fit into
+    one, the first two stand on that side and the next ones opposite; those that still do not fit step aside."""
+
+    hand = OptionProperty("right", options=("right", "left"))
+
+    def __init__(self, **options: Any) -> None:
+        super().__init__(**options)
+        place = self._trigger_layout
+        self.bind(pos=place, size=place, children=place, hand=place)
+        look.bind(glove=place, grid=place)
+
+    def _edge_children(self) -> tuple[Any, list[Any]]:
+        ordered = list(reversed(self.children))
+        middle = next((child for child in ordered if getattr(child, "role", "") == "middle"), None)
+        return middle, [child for child in ordered if child is not middle and not getattr(child, "absent", False)]
+
+    def do_layout(self, *_args: Any) -> None:
+        middle, edges = self._edge_children()
+        if middle is None:
+            return
+        wide = self.width > self.height
+        gap = look.grid
+        along = self.height if wide else self.width
+        room = max(1, int((along + gap) // (look.glove + gap)))
+        near: list[Any] = []
+        far = edges
+        if len(edges) > room:
+            far, near = edges[: min(2, room)], edges[2 : 2 + room]
+        hidden = [edge for edge in edges if edge not in far and edge not in near]
+        for edge in edges:
+            edge.opacity = 0 if edge in hidden else 1
+            if edge in hidden:
+                edge.pos = (-10 * look.glove, -10 * look.glove)
+        far_first = self.hand == "right"  # left column, or top row in either case
+        start, end = 0.0, 0.0
+        if far:
+            self._line(far, wide, at_start=far_first or not wide)
+            start, end = (look.glove + gap, 0.0) if far_first or not wide else (0.0, look.glove + gap)
+        if near:
+            self._line(near, wide, at_start=not (far_first or not wide))
+            start, end = look.glove + gap, look.glove + gap
+        if wide:
+            middle.pos = (self.x + start, self.y)
+            middle.size = (self.width - start - end, self.height)
+        else:
+            middle.pos = (self.x, self.y + end)
+            middle.size = (self.width, self.height - start - end)
+
+    def _line(self, parts: list[Any], wide: bool, at_start: bool) -> None:
+        """Share one edge among the parts: from the top down, or from left to right."""
+        gap = look.grid
+        along = self.height if wide else self.width
+        length = (along - gap * (len(parts) - 1)) / len(parts)
+        for i, part in enumerate(parts):
+            part.size_hint = (None, None)
+            if wide:
+                part.size = (look.glove, length)
+                x = self.x if at_start else self.right - look.glove
+                part.pos = (x, self.top - (i + 1) * length - i * gap)
+            else:
+                part.size = (length, look.glove)
+                y = self.top - look.glove if at_start else self.y
+                part.pos = (self.x + i * (length + gap), y)
