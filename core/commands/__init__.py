@@ -1,0 +1,1 @@
+"""The commands of the terminal, one file each; `core.__main__` calls them."""

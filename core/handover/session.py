@@ -1,0 +1,44 @@
+"""What goes to the laptop: a session and its runs on plain values, as the export writes and reads them."""
+
+from __future__ import annotations
+
+from dataclasses import dataclass
+
+from core.bench.readings import Readings, Ruling
+from core.bench.setup import Setup
+from core.judgement.answer import Answer
+
+KINDS = ("measured", "rehearsal", "demo")
+
+
+@dataclass(frozen=True, slots=True)
+class ExportRun:
+    """One run with all that its fit needs, and the answer that the app showed.
+
+    `run` names the run within its session and is unique there. `rulings` hold at most one word a row, in order of
+    the rows. `start_s` is a person's word on the start of the fit window, None where the program chose it.
+    `recorded_at` is the wall time of the start in ISO 8601 with its offset, empty where unknown. `answer` is None
+    where there is none, and `no_answer` then says why. `true_h_W_m2K` is known in a rehearsal or demo alone."""
+
+    run: str
+    kind: str  # one of KINDS
+    setup: Setup
+    readings: Readings
+    name: str = ""
+    note: str = ""
+    invented: bool = False
+    recorded_at: str = ""
+    stamp_source: str = ""
+    rulings: tuple[Ruling, ...] = ()
+    start_s: float | None = None
+    answer: Answer | None = None
+    no_answer: str = ""
+    true_h_W_m2K: float | None = None
+
+
+@dataclass(frozen=True, slots=True)
+class ExportSession:
+    """The runs that belong together, in the order in which they were made."""
+
+    name: str
+    runs: tuple[ExportRun, ...]
