@@ -3,7 +3,7 @@
 from __future__ import annotations
 
 from core.bench.setup import Setup
-from mobileapp.figures import number, significant
+from mobileapp.figures import localised, significant
 from mobileapp.words import _
 
 
@@ -137,6 +137,6 @@ def body_line(setup: Setup) -> str:
 
 def bench_line(setup: Setup) -> str:
     """The bench in two lines."""
-    step = f"{setup.thermometer.resolution_K:g}"
-    display = _("display in steps of {step} °C").format(step=number(float(step), max(0, len(step.partition(".")[2]))))
+    step = localised(f"{setup.thermometer.resolution_K:g}")
+    display = _("display in steps of {step} °C").format(step=step)
     return f"{body_line(setup)}\n{display} · {choice_label(setup.recording.mode)}"

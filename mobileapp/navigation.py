@@ -20,6 +20,7 @@ SCREENS: dict[str, str] = {
     "bench": "BenchScreen",
     "before": "BeforeScreen",
     "record": "RecordScreen",
+    "after": "AfterScreen",
     "answer": "AnswerScreen",
     "rehearsal": "RehearsalScreen",
     "detail": "DetailScreen",

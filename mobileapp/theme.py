@@ -13,7 +13,7 @@ from kivy.event import EventDispatcher
 from kivy.metrics import dp, sp
 from kivy.properties import ColorProperty, NumericProperty, StringProperty
 
-from mobileapp.contrast import Colour, colour
+from mobileapp.contrast import Colour, colour, mixed
 
 FONTS = Path(__file__).parent / "fonts"
 TARGET_MM = 12.0  # smallest target for a bare finger
@@ -42,6 +42,7 @@ class Palette:
     verdict_ink: Colour
     pad: Colour
     pad_hot: Colour
+    pad_warm: Colour
     pad_cool: Colour
     pad_ink: Colour
     pad_refused: Colour
@@ -72,6 +73,7 @@ PALETTES: dict[str, Palette] = {
         verdict_ink="#FFFFFF",
         pad="#FFFCF6",
         pad_hot="#F6B98F",
+        pad_warm="#F1E2BC",
         pad_cool="#A9D6DC",
         pad_ink="#16262E",
         pad_refused="#C9BFAC",
@@ -95,6 +97,7 @@ PALETTES: dict[str, Palette] = {
         verdict_ink="#0C1519",
         pad="#1A262D",
         pad_hot="#7A3413",
+        pad_warm="#4B3D23",
         pad_cool="#0F4753",
         pad_ink="#F3EDE0",
         pad_refused="#3A4348",
@@ -118,6 +121,7 @@ PALETTES: dict[str, Palette] = {
         verdict_ink="#FFFFFF",
         pad="#FFFFFF",
         pad_hot="#FFC9A6",
+        pad_warm="#FFF1CC",
         pad_cool="#BFE6EC",
         pad_ink="#000000",
         pad_refused="#BDBDBD",
@@ -150,6 +154,7 @@ PAIRS: tuple[tuple[str, str, float, float], ...] = (
     ("verdict_ink", "again", 4.5, 7.0),
     ("pad_ink", "pad", 7.0, 12.0),
     ("pad_ink", "pad_hot", 4.5, 7.0),
+    ("pad_ink", "pad_warm", 4.5, 7.0),
     ("pad_ink", "pad_cool", 4.5, 7.0),
     ("pad_ink", "pad_refused", 4.5, 7.0),
     ("edge", "ground", 3.0, 7.0),
@@ -184,6 +189,7 @@ class Look(EventDispatcher):
     verdict_ink = ColorProperty(PALETTES["day"].verdict_ink)
     pad = ColorProperty(PALETTES["day"].pad)
     pad_hot = ColorProperty(PALETTES["day"].pad_hot)
+    pad_warm = ColorProperty(PALETTES["day"].pad_warm)
     pad_cool = ColorProperty(PALETTES["day"].pad_cool)
     pad_ink = ColorProperty(PALETTES["day"].pad_ink)
     pad_refused = ColorProperty(PALETTES["day"].pad_refused)
@@ -229,3 +235,9 @@ def register_fonts() -> None:
 
 
 look = Look()
+
+
+def heat_colour(level: float, palette: Palette | Look = look) -> Colour:
+    """The pad's colour at a level of heat from 0 (air) to 1 (start)."""
+    cool, warm, hot = (tuple(getattr(palette, name)) for name in ("pad_cool", "pad_warm", "pad_hot"))
+    return mixed(cool, warm, level * 2) if level < 0.5 else mixed(warm, hot, level * 2 - 1)

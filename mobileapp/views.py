@@ -72,3 +72,32 @@ class PadView:
     target_C: float | None
     beat_s: float
     digits: int
+
+
+@dataclass(frozen=True, slots=True)
+class Felt:
+    """What a touch or key came to: confirmed and journalled, or refused with its reason. A sentence may be empty
+    where nothing is to be said, as for a second contact of the same palm."""
+
+    confirmed: bool
+    sentence: str = ""
+
+
+@dataclass(frozen=True, slots=True)
+class BeatView:
+    """The newest beat: `index` counts from 0, below it runs the count-in; `at_s` is when it sounded."""
+
+    index: int
+    at_s: float
+    period_s: float
+
+
+@dataclass(frozen=True, slots=True)
+class TruthView:
+    """What the simulator knows of a rehearsal, and what it shows of the person's own tapping."""
+
+    h_W_m2K: float
+    lag_s: float | None
+    jitter_s: float | None
+    lag_u_s: float | None
+    taps: int

@@ -54,6 +54,11 @@ def _(text: str) -> str:
     return _catalogue.translations.gettext(text) if text else ""
 
 
+def later(text: str) -> str:
+    """Marks a text for the catalogue that is kept in English and looked up when it is shown."""
+    return text
+
+
 @lru_cache(maxsize=1)
 def _patterns() -> tuple[tuple[re.Pattern[str], tuple[str, ...], str], ...]:
     """Each sentence with slots as a pattern, the longest fixed text first."""

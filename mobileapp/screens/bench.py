@@ -13,7 +13,7 @@ from core.bench.solids import SOLIDS
 from core.errors import BadSetup
 from mobileapp.labels import field_label, section_label
 from mobileapp.navigation import Page
-from mobileapp.widgets.basics import ChoicePress, LeadWords, QuietPress, Sheet
+from mobileapp.widgets.basics import ChoicePress, HeadWords, QuietPress, Sheet
 from mobileapp.widgets.entry import ChoiceEntry, ValueEntry
 from mobileapp.words import _, say
 
@@ -64,7 +64,7 @@ class SectionSheet(Sheet):
         self.given = given
         self.rows: dict[str, Any] = {}
         self._on_choice = on_choice
-        self.add_widget(LeadWords(text=section_label(section), font_name="CooltallyBold"))
+        self.add_widget(HeadWords(text=section_label(section)))
         self._more = QuietPress(text=_("More"), on_release=lambda _button: self.unfold())
         self.unfolded = False
         self.wanted = FIRST[section]
@@ -218,7 +218,8 @@ def _as_given(setup: Setup) -> dict[str, dict[str, Any]]:
 
 
 def _defaults(section: str) -> dict[str, Any]:
-    kept = {part.name: part.default for part in fields(SECTIONS[section]) if isinstance(part.default, str | float | int)}
+    parts = fields(SECTIONS[section])
+    kept = {part.name: part.default for part in parts if isinstance(part.default, str | float | int)}
     if section == "body":
         kept["shape"] = "cylinder"
     if section == "recording":

@@ -40,7 +40,8 @@ class HomeScreen(Page):
         self.has_runs = session is not None and bool(session.runs)
         self.invented = session is not None and session.invented
         self.session_title = session.title if session else _("No session yet")
-        self.bench_words = bench_line(session.setup) if self.has_bench else _("Say what stands on your bench first.")
+        unsaid = _("Say what stands on your bench first.")
+        self.bench_words = bench_line(session.setup) if self.has_bench else unsaid
         speed = self.model.next_velocity_m_s()
         self.next_words = speed and _("A good next speed: about {speed} m/s.").format(speed=speed)
         self._list_runs(session)
@@ -65,9 +66,9 @@ class HomeScreen(Page):
             box.add_widget(SmallWords(text=_("Other sessions")))
         for session in others:
             mark = _("invented") + " · " if session.invented else ""
-            text = f"{session.title}\n[size={int(0.8 * self.ids.bench.font_size)}]{mark}{session.started[:10]}[/size]"
-            button = PlainPress(text=text)
-            button.bind(on_release=lambda _b, key=session.session: self.model.open_session(key))
+            small = int(0.8 * self.ids.bench.font_size)
+            button = PlainPress(text=f"{session.title}\n[size={small}]{mark}{session.started[:10]}[/size]")
+            button.bind(on_release=lambda _button, key=session.session: self.model.open_session(key))
             box.add_widget(button)
 
     def open_run(self, run: str) -> None:

@@ -5,9 +5,10 @@ from __future__ import annotations
 from pathlib import Path
 from typing import Any
 
+from kivy.clock import Clock
 from kivy.graphics.texture import Texture
 from kivy.lang import Builder
-from kivy.properties import BooleanProperty, ColorProperty, ObjectProperty, StringProperty
+from kivy.properties import BooleanProperty, ColorProperty, NumericProperty, ObjectProperty, StringProperty
 from kivy.uix.behaviors import ButtonBehavior
 from kivy.uix.boxlayout import BoxLayout
 from kivy.uix.label import Label
@@ -36,6 +37,32 @@ class LeadWords(Words):
 
 class TitleWords(Words):
     """A heading."""
+
+
+class HeadWords(Words):
+    """The name of a part of a screen."""
+
+
+class FitWords(Label):
+    """One line, as large as its box allows up to `largest`: for what must be read from afar."""
+
+    largest = NumericProperty(100)
+
+    def __init__(self, **options: Any) -> None:
+        super().__init__(**options)
+        fit = Clock.create_trigger(self._fit, -1)
+        self.bind(size=fit, text=fit, largest=fit, font_name=fit)
+        fit()
+
+    def _fit(self, *_args: Any) -> None:
+        if self.width <= 1 or self.height <= 1 or not self.text:
+            return
+        self.font_size = self.largest
+        self.texture_update()
+        wide, tall = self.texture_size
+        factor = min(self.width / max(wide, 1), self.height / max(tall, 1), 1.0)
+        if factor < 1.0:
+            self.font_size = max(8.0, self.largest * factor * 0.97)
 
 
 class Sheet(BoxLayout):
@@ -74,6 +101,16 @@ class ChoicePress(Press):
     """One of several choices; filled when chosen."""
 
     chosen = BooleanProperty(False)
+
+
+class Tick(ButtonBehavior, BoxLayout):
+    """A sentence to be ticked; the whole line is the target."""
+
+    text = StringProperty("")
+    ticked = BooleanProperty(False)
+
+    def on_release(self) -> None:
+        self.ticked = not self.ticked
 
 
 class CoolingStrip(Widget):

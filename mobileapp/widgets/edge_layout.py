@@ -4,7 +4,7 @@ from __future__ import annotations
 
 from typing import Any
 
-from kivy.properties import OptionProperty
+from kivy.properties import ListProperty, OptionProperty
 from kivy.uix.layout import Layout
 
 from mobileapp.theme import look
@@ -13,20 +13,22 @@ from mobileapp.theme import look
 class EdgeLayout(Layout):
     """The child with `role = "middle"` gets the room that is left; the others, in the order in which they were
     added, go to a column (wide) or a row on top (upright) on the side away from `hand`. Where they do not fit into
-    one, the first two stand on that side and the next ones opposite; those that still do not fit step aside."""
+    one, the first two stand on that side and the next ones opposite; on a phone those that are `dispensable` step
+    aside."""
 
     hand = OptionProperty("right", options=("right", "left"))
+    absent = ListProperty()  # children that have no place at the moment
 
     def __init__(self, **options: Any) -> None:
         super().__init__(**options)
         place = self._trigger_layout
-        self.bind(pos=place, size=place, children=place, hand=place)
+        self.bind(pos=place, size=place, children=place, hand=place, absent=place)
         look.bind(glove=place, grid=place)
 
     def _edge_children(self) -> tuple[Any, list[Any]]:
         ordered = list(reversed(self.children))
         middle = next((child for child in ordered if getattr(child, "role", "") == "middle"), None)
-        return middle, [child for child in ordered if child is not middle and not getattr(child, "absent", False)]
+        return middle, [child for child in ordered if child is not middle and child not in self.absent]
 
     def do_layout(self, *_args: Any) -> None:
         middle, edges = self._edge_children()
@@ -36,14 +38,14 @@ class EdgeLayout(Layout):
         gap = look.grid
         along = self.height if wide else self.width
         room = max(1, int((along + gap) // (look.glove + gap)))
+        if len(edges) > 2 * room or (len(edges) > room and room < 3):
+            edges = [edge for edge in edges if not getattr(edge, "dispensable", False)]
         near: list[Any] = []
         far = edges
         if len(edges) > room:
             far, near = edges[: min(2, room)], edges[2 : 2 + room]
-        hidden = [edge for edge in edges if edge not in far and edge not in near]
-        for edge in edges:
-            edge.opacity = 0 if edge in hidden else 1
-            if edge in hidden:
+        for edge in self.children:
+            if edge not in far and edge not in near and edge is not middle:
                 edge.pos = (-10 * look.glove, -10 * look.glove)
         far_first = self.hand == "right"  # left column, or top row in either case
         start, end = 0.0, 0.0

@@ -71,7 +71,9 @@ class ValueEntry(BoxLayout):
     numeric = BooleanProperty(True)
     __events__ = ("on_entered",)
 
-    def __init__(self, section: str, key: str, description: Description, value: Any = None, **options: Any) -> None:
+    def __init__(
+        self, section: str, key: str, description: Description, value: Any = None, **options: Any
+    ) -> None:
         self.section = section
         self.description = description
         self.units = offered_units(key, description.unit)

@@ -10,13 +10,15 @@ from typing import Any
 
 from kivy.clock import Clock
 from kivy.graphics import Color, InstructionGroup, Rectangle
+from kivy.graphics.texture import Texture
 from kivy.lang import Builder
-from kivy.properties import BooleanProperty, ListProperty, NumericProperty, StringProperty
+from kivy.metrics import dp
+from kivy.properties import BooleanProperty, ListProperty, NumericProperty, ObjectProperty, StringProperty
 from kivy.uix.floatlayout import FloatLayout
 from kivy.uix.label import Label
 
-from mobileapp.contrast import mixed
-from mobileapp.theme import look
+from mobileapp.theme import heat_colour, look
+from mobileapp.widgets import basics  # noqa: F401  the .kv of this widget uses them
 
 FLASH_S = 0.11
 REFUSED_S = 0.45
@@ -54,19 +56,29 @@ class Pad(PadTouch, FloatLayout):
     flash = BooleanProperty(False)
     flash_wanted = BooleanProperty(True)
     refusal = StringProperty("")
+    heat = ObjectProperty(None, allownone=True)
 
     def __init__(self, **options: Any) -> None:
         super().__init__(**options)
         self._scale = InstructionGroup()
-        self.canvas.before.add(self._scale)
+        self.canvas.add(self._scale)
+        self._paint_heat()
+        look.bind(palette_name=self._paint_heat)
         redraw = Clock.create_trigger(self._draw_scale)
         self.bind(marks=redraw, pos=redraw, size=redraw)
         look.bind(palette_name=redraw, text_scale=redraw)
         self._end_flash = Clock.create_trigger(self._dark, FLASH_S)
         self._end_refusal = Clock.create_trigger(self._forget_refusal, REFUSED_S)
 
-    def level_colour(self, level: float, *_bound: Any) -> tuple[float, ...]:
-        return mixed(tuple(look.pad_cool), tuple(look.pad_hot), min(max(level, 0.0), 1.0))
+    def _paint_heat(self, *_args: Any) -> None:
+        """The colour of each level: from cool at the bottom through warm to hot at the top."""
+        rows = 128
+        texture = Texture.create(size=(1, rows), colorfmt="rgb")
+        pixels = bytearray()
+        for row in range(rows):
+            pixels += bytes(round(255 * channel) for channel in heat_colour(row / (rows - 1))[:3])
+        texture.blit_buffer(bytes(pixels), colorfmt="rgb", bufferfmt="ubyte")
+        self.heat = texture
 
     def confirm(self) -> None:
         """Light for a tap that the journal holds."""
@@ -90,19 +102,17 @@ class Pad(PadTouch, FloatLayout):
         scale = self._scale
         scale.clear()
         for level, text in self.marks:
-            y = self.y + level * self.height
+            y = self.y + dp(6) + level * (self.height - dp(12))
             label = Label(text=text, font_size=look.small, font_name=look.plain)
             label.texture_update()
             width, height = label.texture_size
             if not self.y + height < y < self.top - height:
                 continue
             scale.add(Color(*look.pad_ink))
-            scale.add(Rectangle(pos=(self.x, y), size=(look.grid * 2, 1.5)))
-            scale.add(
-                Rectangle(
-                    texture=label.texture, pos=(self.x + look.grid * 2.5, y - height / 2), size=(width, height)
-                )
-            )
+            scale.add(Rectangle(pos=(self.x + look.grid, y), size=(look.grid * 2, 1.5)))
+            if self.width > dp(520):
+                at = (self.x + look.grid * 3.5, y - height / 2)
+                scale.add(Rectangle(texture=label.texture, pos=at, size=(width, height)))
 
 
 Builder.load_file(str(Path(__file__).with_suffix(".kv")))

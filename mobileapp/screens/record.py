@@ -1,0 +1,258 @@
+"""Recording: nearly the whole screen is the pad, or, on a beat, two blocks of digit keys for two thumbs."""
+
+from __future__ import annotations
+
+from typing import Any
+
+from kivy.clock import Clock
+from kivy.properties import BooleanProperty, ObjectProperty, StringProperty
+
+from mobileapp.device.ports import Stamp
+from mobileapp.figures import clock_time, number, percent, with_uncertainty
+from mobileapp.navigation import Page
+from mobileapp.views import Felt, PadView
+from mobileapp.widgets import basics, digits, hold, pad, simulated  # noqa: F401  the .kv of this screen uses them
+from mobileapp.widgets.digits import ERASE, SKIP
+from mobileapp.widgets.edge_layout import EdgeLayout  # noqa: F401
+from mobileapp.widgets.pad import USED_BUTTONS
+from mobileapp.widgets.ticks import round_ticks
+from mobileapp.words import _, say
+
+PAD_KEYS = {32, 13, 271, 273, 274, 275, 276, 280, 281}  # space, enter, keypad enter, arrows, page up and down
+ERASE_KEY = 8
+STATUS_PERIOD_S = 0.25
+
+
+class RecordScreen(Page):
+    """Forwards every touch and key with its stamp to the model, and paints the pad view that comes back."""
+
+    view = ObjectProperty(None, allownone=True)
+    hand = StringProperty("right")
+    beat_mode = BooleanProperty(False)
+    waiting = BooleanProperty(True)
+    title = StringProperty("")
+    clock_text = StringProperty("0:00")
+    live_text = StringProperty("")
+    start_text = StringProperty("")
+    body_marked = BooleanProperty(False)
+    fan_marked = BooleanProperty(False)
+    can_undo = BooleanProperty(False)
+    asking_number = BooleanProperty(False)
+    rehearsal = BooleanProperty(False)
+    entered = StringProperty("")
+    beat_prefix = StringProperty("")
+    beat_share = ObjectProperty(0.0)
+    beat_word = StringProperty("")
+
+    def __init__(self, **options: Any) -> None:
+        super().__init__(**options)
+        self._number_stamp: Stamp | None = None
+        self._ticker: Any = None
+
+    # ------------------------------------------------------------------ coming and going
+
+    def arrive(self, **_aim: Any) -> None:
+        self.model.bind(pad=self._paint, live=self._paint_live, beat=self._paint_beat)
+        self.hand = self.model.preferences.hand
+        self.ids.pad.flash_wanted = self.model.preferences.flash
+        self.asking_number = False
+        self.entered = ""
+        self._ticker = Clock.schedule_interval(self._tick, STATUS_PERIOD_S)
+        self._paint()
+        self._paint_live()
+        self.ids.display.source = self.model.simulated_display
+        self.model.watch_screen(True)
+
+    def leave(self) -> None:
+        self.model.unbind(pad=self._paint, live=self._paint_live, beat=self._paint_beat)
+        if self._ticker is not None:
+            self._ticker.cancel()
+        self.ids.display.source = None
+        self.model.watch_screen(False)
+
+    def hold_back(self) -> bool:
+        """The back key never leaves a run by accident; it closes the number panel at most."""
+        if self.asking_number:
+            self.asking_number = False
+            return True
+        return self.model.pad is not None
+
+    # ------------------------------------------------------------------ what is painted
+
+    def _paint(self, *_args: Any) -> None:
+        view: PadView | None = self.model.pad
+        self.view = view
+        if view is None:
+            return
+        self.beat_mode = view.mode == "beat"
+        self.waiting = view.state == "waiting"
+        self.rehearsal = view.kind == "rehearsal"
+        self.can_undo = view.can_undo
+        self.body_marked = "body in" in view.marks
+        self.fan_marked = "fan on" in view.marks
+        self.title = self.model.run_title(view.run)
+        decimals = self._decimals(view)
+        self.start_text = number(view.start_C, decimals)
+        pad_widget = self.ids.pad
+        shown = view.start_C if self.waiting else view.shown_C
+        pad_widget.figure = f"{number(shown, decimals)}"
+        if self.waiting:
+            pad_widget.caption = _("Tap when the display becomes {reading} °C").format(reading=self.start_text)
+            pad_widget.hint = _("Set the first number with the keys at the edge.")
+        else:
+            pad_widget.caption = _("next {reading} °C").format(reading=number(view.next_C, decimals))
+            pad_widget.hint = ""
+        self._paint_level(view)
+        self._paint_entry(view)
+
+    def _decimals(self, view: PadView) -> int:
+        return max(0, len(f"{view.resolution_K:g}".partition(".")[2]))
+
+    def _paint_level(self, view: PadView) -> None:
+        top = view.start_C
+        shown = view.shown_C if view.shown_C is not None else top
+        if top is None or shown is None or top <= view.floor_C:
+            return
+        span = top - view.floor_C
+        pad_widget = self.ids.pad
+        pad_widget.level = (shown - view.floor_C) / span
+        ticks, decimals = round_ticks(view.floor_C, top, 8)
+        pad_widget.marks = [((tick - view.floor_C) / span, f"{number(tick, decimals)} °C") for tick in ticks]
+
+    def _paint_live(self, *_args: Any) -> None:
+        live = self.model.live
+        if live.answer is None:
+            self.live_text = say(live.waiting_for)
+            return
+        value, spread = with_uncertainty(live.answer.h_W_m2K, live.answer.h_U95_W_m2K)
+        share = percent(live.answer.h_U95_W_m2K / live.answer.h_W_m2K, 1)
+        self.live_text = f"h {value} ± {spread} W/(m²·K)  ({share})"
+
+    def _tick(self, _dt: float) -> None:
+        view = self.view
+        if view is None:
+            return
+        since = view.elapsed_from_s
+        self.clock_text = clock_time(self.model.now_s() - since) if since is not None else "0:00"
+        self.model.watch_sleep()
+
+    # ------------------------------------------------------------------ taps
+
+    def touched(self, touch: Any) -> None:
+        """A finger on the pad."""
+        self._felt(self.model.contact(self._stamp(touch)))
+
+    def _stamp(self, touch: Any) -> Stamp:
+        return touch.ud.get("stamp") or self.model.device.stamps.touch(touch)
+
+    def key(self, key: int, character: str, stamp: Stamp) -> bool:
+        """A key of a keyboard or pedal, once a press."""
+        if self.view is None or self.asking_number:
+            return False
+        if key == ERASE_KEY:
+            self.undo(stamp)
+        elif character.isdigit() and self.beat_mode and not self.waiting:
+            self.digit(character, stamp)
+        elif character in ("2", "3") and not self.beat_mode and not self.waiting:
+            self._felt(self.model.step(int(character), stamp))
+        elif key in PAD_KEYS:
+            self._felt(self.model.contact(stamp))
+        else:
+            return False
+        return True
+
+    def _felt(self, felt: Felt) -> None:
+        if felt.confirmed:
+            self.ids.pad.confirm()
+        elif felt.sentence:
+            self.ids.pad.refuse(say(felt.sentence))
+
+    def steps(self, count: int, touch: Any) -> None:
+        if getattr(touch, "button", None) in USED_BUTTONS:
+            self._felt(self.model.step(count, self._stamp(touch)))
+
+    def undo(self, stamp: Stamp) -> None:
+        self._felt(self.model.undo(stamp))
+
+    def undo_touch(self, touch: Any) -> None:
+        self.undo(self._stamp(touch))
+
+    def mark(self, name: str, touch: Any) -> None:
+        self._felt(self.model.mark(name, self._stamp(touch)))
+
+    def raise_start(self, steps: int) -> None:
+        """Move the first number up or down by display steps."""
+        if self.view is not None and self.view.start_C is not None:
+            self.model.start_at(self.view.start_C + steps * self.view.resolution_K)
+
+    def ask_number(self, touch: Any) -> None:
+        """The stamp is taken now; the number may take its time."""
+        self._number_stamp = self._stamp(touch)
+        self.ids.number.entered = ""
+        self.asking_number = True
+
+    def number_done(self, value: float) -> None:
+        if self.waiting:
+            self.model.start_at(value)
+            self.asking_number = False
+            return
+        felt = self.model.typed(value, self._number_stamp)
+        if felt.confirmed:
+            self.asking_number = False
+            self._felt(felt)
+        else:
+            self.ids.number.trouble = say(felt.sentence)
+
+    def end(self) -> None:
+        """Held long enough: the run is over."""
+        run = self.model.end()
+        if run is None:
+            self.manager.trail = []
+            self.go("home")
+            return
+        self.manager.trail = [("home", {})]
+        self.go("after" if self.model.asks_after(run) else "answer", run=run)
+
+    # ------------------------------------------------------------------ beat
+
+    def digit(self, name: str, stamp: Stamp | None = None) -> None:
+        """One of the digit keys: the last digits of the display at this beat."""
+        if self.view is None:
+            return
+        if name == ERASE:
+            if self.entered:
+                self.entered = self.entered[:-1]
+                self._paint_entry(self.view)
+            else:
+                self.undo(stamp or self.model.stamp_now())
+            return
+        if name == SKIP:
+            self.entered = ""
+            self._felt(self.model.skip_beat())
+            self._paint_entry(self.view)
+            return
+        self.entered += name
+        if len(self.entered) >= self.view.digits:
+            entered, self.entered = self.entered, ""
+            self._felt(self.model.last_digits(entered))
+        self._paint_entry(self.view)
+
+    def digit_touched(self, name: str, touch: Any) -> None:
+        if getattr(touch, "button", None) in USED_BUTTONS:
+            self.digit(name, self._stamp(touch))
+
+    def _paint_entry(self, view: PadView) -> None:
+        if view.mode != "beat":
+            return
+        blanks = "▢" * max(0, view.digits - len(self.entered))
+        self.beat_prefix = f"{self.entered}{blanks}"
+
+    def _paint_beat(self, *_args: Any) -> None:
+        beat = self.model.beat
+        if beat is None:
+            self.beat_word = ""
+        elif beat.index < 0:
+            self.beat_word = _("in {count}").format(count=-beat.index)
+        else:
+            self.beat_word = _("Beat {count}").format(count=beat.index)
+            self.ids.pad.confirm()
