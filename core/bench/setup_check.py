@@ -6,14 +6,16 @@ from __future__ import annotations
 
 import datetime
 from collections.abc import Iterator, Sequence
-from dataclasses import MISSING, dataclass, fields
+from dataclasses import MISSING, dataclass, fields, replace
 from difflib import get_close_matches
 from math import hypot, isfinite
 from typing import Any
 
+from core.bench.body import thermal_body
 from core.bench.fields import Description
 from core.bench.setup import SECTIONS, Body, Flow, Setup, Surrounding
-from core.bench.solids import SOLIDS
+from core.bench.solids import SOLIDS, solid
+from core.errors import BadSetup
 
 PROPERTIES = ("density_kg_m3", "heat_capacity_J_kgK", "conductivity_W_mK")
 SIZES = {
@@ -124,8 +126,8 @@ def _number_fault(description: Description, value: float) -> str | None:
         (unit for factor, unit in _SLIPS.get(description.unit, ()) if fits(value * factor)) if value > 0 else ()
     )
     slip = next(iter(slips), None)
-    hint = f" (is {shown(value)} in {slip}?)" if slip else ""
-    return f"is {shown(value)}, where {allowed(description)} is wanted{hint}"
+    hint = f" (is {value:.10g} in {slip}?)" if slip else ""
+    return f"is {value:.10g}, where {allowed(description)} is wanted{hint}"
 
 
 def _text_fault(description: Description, value: str) -> str | None:
@@ -172,7 +174,7 @@ def _body_problems(body: Body) -> Iterator[tuple[str, str]]:
             yield "material", f"is missing: name one, or give {', '.join(PROPERTIES)}"
         else:
             yield missing[0], "is missing: without a material all three properties are needed"
-    if body.material is not None and body.material not in SOLIDS and missing:
+    if body.material is not None and missing and not _is_known(body.material):
         yield (
             "material",
             f"is '{shown(body.material)}', which is not in the table of solids; the nearest there is "
@@ -187,30 +189,24 @@ def _body_problems(body: Body) -> Iterator[tuple[str, str]]:
     yield from _mass_problems(body)
 
 
-def volume_m3(body: Body) -> float | None:
-    """Volume of the body [m³] from its sizes; None where one is missing."""
-    sizes = [getattr(body, key) for key in SIZES[body.shape]]
-    if any(size is None for size in sizes):
-        return None
-    if body.shape == "block":
-        return float(sizes[0] * sizes[1] * sizes[2])
-    pi = 3.141592653589793
-    return float(pi / 6 * sizes[0] ** 3 if body.shape == "sphere" else pi / 4 * sizes[0] ** 2 * sizes[1])
+def _is_known(material: str) -> bool:
+    try:
+        solid(material)
+    except BadSetup:
+        return False
+    return True
 
 
 def _mass_problems(body: Body) -> Iterator[tuple[str, str]]:
-    volume = volume_m3(body)
-    density = body.density_kg_m3
-    if density is None and body.material in SOLIDS:
-        density = SOLIDS[body.material].density_kg_m3
-    if body.mass_kg is None or volume is None or density is None:
+    if body.mass_kg is None:
         return
-    computed = density * volume
+    try:
+        computed = thermal_body(replace(body, mass_kg=None)).mass_kg
+    except BadSetup:  # a size or a property is missing, which is refused elsewhere
+        return
     if not computed / MASS_FACTOR <= body.mass_kg <= computed * MASS_FACTOR:
-        yield (
-            "mass_kg",
-            f"is {body.mass_kg} kg, where the sizes and the density make {computed:.3g} kg; correct one of them",
-        )
+        makes = f"where the sizes and the density make {computed:.3g} kg; correct one of them"
+        yield "mass_kg", f"is {body.mass_kg} kg, {makes}"
 
 
 def _air_problems(air: Surrounding) -> Iterator[tuple[str, str]]:

@@ -11,7 +11,7 @@ from pathlib import Path
 from typing import Any
 
 from core.bench.setup import SECTIONS, Setup
-from core.bench.setup_check import descriptions, nearest, problems, required, shown, value_fault
+from core.bench.setup_check import allowed, descriptions, nearest, problems, required, shown, value_fault
 from core.errors import BadSetup
 
 LARGEST_FILE = 200_000  # bytes; a set-up has some 2 000

@@ -56,6 +56,15 @@ rows = 5
 """
 
 
+def refusal(text):
+    """The sentence by which a text is refused, empty if it is not."""
+    try:
+        setup_from_text(text, "bench.toml")
+    except BadSetup as error:
+        return str(error)
+    return ""
+
+
 def any_value(field):
     """Any value that the description of a field allows, None where that is its default."""
     one = field.metadata["description"]
@@ -125,25 +134,20 @@ def test_any_usable_setup_reads_back_as_it_was_written(setup):
 )
 def test_any_text_is_read_or_refused(text):
     """No text makes the reader raise anything but its own refusal."""
-    try:
-        setup_from_text(text, "bench.toml")
-    except BadSetup as error:
-        assert "\n" not in str(error)
-        assert str(error).startswith("bench.toml")
+    sentence = refusal(text)
+    assert sentence.isprintable()
+    assert sentence.startswith("bench.toml") or not sentence
 
 
 @settings(max_examples=300, deadline=None)
 @given(st.integers(0, len(EXAMPLE) - 1), st.integers(0, 30), st.text(max_size=6))
 def test_the_example_with_a_piece_changed_is_read_or_refused(at, cut, put):
     """Damage anywhere in a good file is read as another set-up or refused in one line."""
-    try:
-        setup_from_text(EXAMPLE[:at] + put + EXAMPLE[at + cut :], "bench.toml")
-    except BadSetup as error:
-        assert "\n" not in str(error)
+    assert refusal(EXAMPLE[:at] + put + EXAMPLE[at + cut :]).isprintable()
 
 
 def test_the_example_of_the_contract_is_read(tmp_path):
-    """The example reads to the numbers that stand in it, the rest to the defaults, with or without a mark of UTF-8."""
+    """The example reads to the numbers that stand in it, the rest to the defaults, with a mark of UTF-8."""
     path = tmp_path / "bench.toml"
     path.write_bytes(b"\xef\xbb\xbf" + EXAMPLE.encode())
     setup = read_setup(path)
@@ -156,7 +160,7 @@ def test_the_example_of_the_contract_is_read(tmp_path):
 
 
 def test_the_least_that_is_required_is_enough():
-    """Shape with sizes, material, resolution, mode, air temperature and velocity make a set-up; no more is needed."""
+    """Shape with sizes, material, resolution, mode, air temperature and velocity make a set-up."""
     text = """
         body = {shape = "sphere", diameter_m = 0.02, material = "brass"}
         thermometer.resolution_K = 1

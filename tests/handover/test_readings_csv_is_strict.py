@@ -1,4 +1,4 @@
-"""READINGS.csv: what is written reads back exactly, and whatever else stands in a file is refused by line and column."""
+"""READINGS.csv: what is written reads back exactly, all else is refused by line and column."""
 
 import pytest
 from hypothesis import given, settings
@@ -34,11 +34,13 @@ def test_line_ends_and_a_utf8_mark_do_not_matter(end, mark, last):
 )
 def test_any_bytes_are_read_or_refused(data):
     """No file makes the reader raise anything but its own refusal, in one line that names the file."""
+    sentence = ""
     try:
         readings_from_bytes(data, "A.csv")
     except BadReadings as error:
-        assert str(error).startswith("A.csv line ")
-        assert str(error).isprintable()
+        sentence = str(error)
+    assert sentence.isprintable()
+    assert sentence.startswith("A.csv line ") or not sentence
 
 
 def test_a_huge_field_and_a_huge_file_are_refused(tmp_path):
