@@ -79,9 +79,7 @@ def _section(section: str, table: Any, lines: _Lines) -> Any:
             values[key] = tuple(float(one) for one in value)
     for key in required(section):
         if key not in values:
-            raise lines.refuse(
-                section, key, f"is missing: {known[key].meaning[0].lower()}{known[key].meaning[1:-1]}"
-            )
+            raise lines.refuse(section, key, f"is missing; it is {allowed(known[key])}")
     return SECTIONS[section](**values)
 
 

@@ -66,10 +66,12 @@ def decoded(data: bytes, name: str, encoding: str = "utf-8") -> str:
     return text
 
 
-def records(text: str, name: str, delimiter: str = ",") -> Iterator[tuple[int, list[str]]]:
-    """The records of a table, each with the line at which it begins. Raises BadReadings for broken quotes."""
+def records(text: str, name: str, delimiter: str = ",", first_line: int = 1) -> Iterator[tuple[int, list[str]]]:
+    """The records of a table, each with the line at which it begins; the text begins at `first_line` of its file.
+
+    Raises BadReadings for broken quotes."""
     reader = csv.reader(io.StringIO(text, newline=""), strict=True, delimiter=delimiter)
-    line = 1
+    line = first_line
     while True:
         try:
             fields = next(reader)
@@ -84,7 +86,7 @@ def records(text: str, name: str, delimiter: str = ",") -> Iterator[tuple[int, l
             )
             raise Place(name, line).refuse(fault) from None
         yield line, fields
-        line = reader.line_num + 1
+        line = reader.line_num + first_line
 
 
 def table(text: str, name: str, header: Sequence[str]) -> Iterator[tuple[int, list[str]]]:

@@ -10,6 +10,7 @@ from collections.abc import Iterator, Sequence
 from dataclasses import dataclass, fields, replace
 from itertools import pairwise
 from math import isfinite
+from typing import Any
 
 from core.bench.readings import Readings
 from core.bench.setup import MODES
@@ -92,8 +93,7 @@ def _lines(text: str, mapping: Mapping, name: str) -> Iterator[tuple[int, list[s
     while lines and not lines[-1].strip(" \t,;|"):
         lines.pop()
     kept = "\n".join(lines[mapping.first_line - 1 :])
-    for line, row in records(kept, name, DELIMITERS[mapping.delimiter]):
-        yield line + mapping.first_line - 1, row
+    yield from records(kept, name, DELIMITERS[mapping.delimiter], mapping.first_line)
 
 
 def _field(row: Sequence[str], column: int, place: Place) -> str:
@@ -215,11 +215,11 @@ def _guess_columns(lines: Sequence[str], mapping: Mapping) -> tuple[Mapping, int
     numbers = [i for i, field in enumerate(middle) if _number(field, mapping.decimal) is not None]
     heading = [one.lower() for one in rows[start - 1]] if start else []
     date = next((i for i, one in enumerate(middle) if clocks and has_date(f"{one} 00:00")), None)
-    time = clocks[0] if clocks else _growing(typical, numbers, mapping)
+    time = clocks[0] if clocks else _growing(typical, numbers, heading, mapping)
     others = [i for i in numbers if i not in (time, date)]
     if time is None or not others:
         return None
-    reading = next((i for i in others if _names_temperature(heading, i)), others[0])
+    reading = max(others, key=lambda i: _fall(typical, i, mapping))
     title = heading[reading] if reading < len(heading) else ""
     above = heading[time] if time < len(heading) else ""
     whole = f"{middle[date]} {middle[time]}" if date is not None else middle[time]
@@ -245,17 +245,26 @@ def _holds_run(row: Sequence[str], mapping: Mapping) -> bool:
     return numbers >= 1 and times + numbers >= 2
 
 
-def _growing(rows: Sequence[Sequence[str]], numbers: Sequence[int], mapping: Mapping) -> int | None:
-    """The first column whose numbers only grow."""
-    for i in numbers:
-        values = [_number(row[i], mapping.decimal) if i < len(row) else None for row in rows]
-        if all(b is not None and a is not None and b > a for a, b in pairwise(values)):
-            return i
-    return None
+def _column(rows: Sequence[Sequence[str]], i: int, mapping: Mapping) -> list[float | None]:
+    return [_number(row[i], mapping.decimal) if i < len(row) else None for row in rows]
 
 
-def _names_temperature(heading: Sequence[str], column: int) -> bool:
-    return column < len(heading) and re.search(r"temp|°|_c\b|\bt\b|reading", heading[column]) is not None
+def _growing(
+    rows: Sequence[Sequence[str]], numbers: Sequence[int], heading: Sequence[str], mapping: Mapping
+) -> int | None:
+    """The column whose numbers only grow: the first that is headed as a time, else the first."""
+    columns = ((i, pairwise(_column(rows, i, mapping))) for i in numbers)
+    growing = [i for i, pairs in columns if all(a is not None and b is not None and b > a for a, b in pairs)]
+    named = (
+        i for i in growing if i < len(heading) and re.search(r"\b(m?s|min|sec\w*)\b|time|zeit|_m?s$", heading[i])
+    )
+    return next(named, growing[0] if growing else None)
+
+
+def _fall(rows: Sequence[Sequence[str]], i: int, mapping: Mapping) -> float:
+    """How far a column's numbers fall from first to last."""
+    values = [value for value in _column(rows, i, mapping) if value is not None]
+    return values[0] - values[-1] if values else float("-inf")
 
 
 def mapping_from_words(words: Sequence[str], start: Mapping) -> Mapping:
@@ -268,7 +277,8 @@ def mapping_from_words(words: Sequence[str], start: Mapping) -> Mapping:
         if key not in known:
             parts = f"which are {' '.join(known)}; the nearest is '{nearest(key, known)}'"
             raise WrongUsage(f"'{shown(word)}' is no part of a mapping, {parts}.")
-        start = replace(start, **{key: _word_value(key, value)})
+        change: dict[str, Any] = {key: _word_value(key, value)}
+        start = replace(start, **change)
     return start
 
 
