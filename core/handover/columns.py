@@ -67,7 +67,7 @@ ABOUT: tuple[tuple[Column, RunValue], ...] = (
     (Column("run", "string", "The run's name, unique in the session.", needed=True), lambda s, r: r.run),
     (Column("name", "string", "What the person called the run."), lambda s, r: r.name),
     (Column("note", "string", "What the person wrote to it."), lambda s, r: r.note),
-    (Column("kind", "string", "measured, rehearsal or demo.", needed=True), lambda s, r: r.kind),
+    (Column("kind", "string", "measured, still-air, rehearsal or imported.", needed=True), lambda s, r: r.kind),
     (Column("invented", "boolean", "Whether the numbers are made up.", needed=True), lambda s, r: r.invented),
     (
         Column("recorded_at", "dateTime", "Wall time at the start, for the record only."),
@@ -84,6 +84,9 @@ ABOUT: tuple[tuple[Column, RunValue], ...] = (
         ),
         lambda s, r: r.start_s,
     ),
+    (Column("marks", "string", "Moments that are no readings, with their time in s."), lambda s, r: r.marks),
+    (Column("decision", "string", "A person's word on the run: keep, look or discard."), lambda s, r: r.decision),
+    (Column("decision_reason", "string", "The reason given for it."), lambda s, r: r.decision_reason),
     (
         Column("true_h_W_m2K", "double", "The h that a simulation was made with.", "W/(m²·K)"),
         lambda s, r: r.true_h_W_m2K,

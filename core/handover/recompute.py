@@ -16,11 +16,15 @@ from core.judgement.series import Series, law_of
 
 
 def answer_to(
-    readings: Readings, setup: Setup, rulings: tuple[Ruling, ...] = (), start_s: float | None = None
+    readings: Readings,
+    setup: Setup,
+    rulings: tuple[Ruling, ...] = (),
+    start_s: float | None = None,
+    earlier: Sequence[Answer] = (),
 ) -> Answer:
     """The answer to one run. Raises NoAnswer where its readings cannot give one."""
     try:
-        return judge(readings, setup, rulings=rulings, start_s=start_s)
+        return judge(readings, setup, rulings=rulings, start_s=start_s, earlier=earlier)
     except (ArithmeticError, np.linalg.LinAlgError) as error:
         raise NoAnswer(
             f"The fit of these readings breaks down ({error}); check them against the set-up."
@@ -28,11 +32,18 @@ def answer_to(
 
 
 def answers_to(session: ExportSession) -> list[Answer | BenchError]:
-    """The answer to each run, or the refusal of it."""
+    """The answer to each run, or the refusal of it. A run is compared with the runs before it in the session that
+    have an answer, are of its kind and were not discarded."""
     answers: list[Answer | BenchError] = []
     for run in session.runs:
+        pairs = zip(session.runs, answers, strict=False)
+        earlier = [
+            answer
+            for other, answer in pairs
+            if isinstance(answer, Answer) and other.kind == run.kind and other.decision != "discard"
+        ]
         try:
-            answers.append(answer_to(run.readings, run.setup, run.rulings, run.start_s))
+            answers.append(answer_to(run.readings, run.setup, run.rulings, run.start_s, earlier))
         except BenchError as error:
             answers.append(error)
     return answers
@@ -43,21 +54,21 @@ def law_over(
 ) -> tuple[Series, list[tuple[str, str]]]:
     """The law over the runs of a session, and the runs left out of it, each with the reason.
 
-    Left out are runs in still air, without an answer or with the verdict `again`, and of another kind than the
-    best one present (measured before demo before rehearsal). Raises NoAnswer with fewer than two speeds."""
-    kind = next(
-        (kind for kind in ("measured", "demo") if any(run.kind == kind for run in session.runs)), "rehearsal"
-    )
+    Left out are runs in still air, rehearsals beside measured runs, runs without an answer or with the verdict
+    `again` that nobody decided to keep, and discarded ones. Raises NoAnswer with fewer than two speeds."""
+    real = any(run.kind != "rehearsal" for run in session.runs)
     kept: list[tuple[str, Answer]] = []
     left_out: list[tuple[str, str]] = []
     for run, answer in zip(session.runs, answers, strict=True):
         if isinstance(answer, BenchError):
             left_out.append((run.run, str(answer)))
-        elif run.kind != kind:
-            left_out.append((run.run, f"It is a {run.kind} run, the others are {kind} ones."))
+        elif run.decision == "discard":
+            left_out.append((run.run, f"It was discarded. {run.decision_reason}".strip()))
+        elif run.kind == "rehearsal" and real:
+            left_out.append((run.run, "It is a rehearsal."))
         elif run.setup.recording.kind != "forced" or answer.nusselt is None or answer.reynolds is None:
             left_out.append((run.run, "It was not made in forced flow."))
-        elif answer.verdict == "again":
+        elif answer.verdict == "again" and run.decision != "keep":
             left_out.append((run.run, answer.reason))
         else:
             kept.append((run.run, answer))

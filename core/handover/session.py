@@ -8,7 +8,8 @@ from core.bench.readings import Readings, Ruling
 from core.bench.setup import Setup
 from core.judgement.answer import Answer
 
-KINDS = ("measured", "rehearsal", "demo")
+KINDS = ("measured", "still-air", "rehearsal", "imported")
+DECISIONS = ("keep", "look", "discard")
 
 
 @dataclass(frozen=True, slots=True)
@@ -17,8 +18,10 @@ class ExportRun:
 
     `run` names the run within its session and is unique there. `rulings` hold at most one word a row, in order of
     the rows. `start_s` is a person's word on the start of the fit window, None where the program chose it.
-    `recorded_at` is the wall time of the start in ISO 8601 with its offset, empty where unknown. `answer` is None
-    where there is none, and `no_answer` then says why. `true_h_W_m2K` is known in a rehearsal or demo alone."""
+    `decision` (one of DECISIONS, or empty) is a person's word on the whole run. `recorded_at` is the wall time of
+    the start in ISO 8601 with its offset, empty where unknown. `marks` are moments that are no readings, as text.
+    `answer` is None where there is none, and `no_answer` then says why. `true_h_W_m2K` is known where the numbers
+    are simulated."""
 
     run: str
     kind: str  # one of KINDS
@@ -29,8 +32,11 @@ class ExportRun:
     invented: bool = False
     recorded_at: str = ""
     stamp_source: str = ""
+    marks: str = ""
     rulings: tuple[Ruling, ...] = ()
     start_s: float | None = None
+    decision: str = ""
+    decision_reason: str = ""
     answer: Answer | None = None
     no_answer: str = ""
     true_h_W_m2K: float | None = None

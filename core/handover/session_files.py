@@ -17,12 +17,13 @@ from core.errors import BadReadings, HandoverFault
 from core.handover.columns import ABOUT, READING_COLUMNS, RUN_COLUMNS, Column, reading_rows, run_row, setup_columns
 from core.handover.csv_text import Place, as_written, decoded, named_table, parsed_number, to_text
 from core.handover.readings_csv import COLDEST_C, HOTTEST_C, LONGEST_RECORD_S
-from core.handover.session import KINDS, ExportRun, ExportSession
+from core.handover.session import DECISIONS, KINDS, ExportRun, ExportSession
 from core.handover.table_metadata import metadata_text
 
 RUNS, READINGS, METADATA, SUMS = "runs.csv", "readings.csv", "csv-metadata.json", "SHA256SUMS"
 FILES = (RUNS, READINGS, METADATA, SUMS)
 _HUGE = 1e300
+_TEXTS = ("name", "note", "recorded_at", "stamp_source", "marks", "decision", "decision_reason")
 
 
 def session_files(session: ExportSession) -> dict[str, bytes]:
@@ -49,11 +50,13 @@ def _check(session: ExportSession) -> None:
             f"Two runs of the session are called '{shown(twice[0])}'; each needs a name of its own."
         )
     for run in session.runs:
-        texts = (session.name, run.run, run.name, run.note, run.stamp_source, run.no_answer)
+        texts = (session.name, run.run, run.no_answer, *(getattr(run, name) for name in _TEXTS))
         if any("\0" in one for one in texts):
             raise HandoverFault(f"Run '{shown(run.run)}' holds a NUL character in a text; type that text anew.")
         if not run.run or run.kind not in KINDS:
             raise HandoverFault(f"Run '{shown(run.run)}' needs a name and a kind out of {', '.join(KINDS)}.")
+        if run.decision not in ("", *DECISIONS):
+            raise HandoverFault(f"Run '{shown(run.run)}' has a decision that is none of {', '.join(DECISIONS)}.")
         rows = [one.row for one in run.rulings]
         if rows != sorted(set(rows)) or not all(0 <= row < len(run.readings) for row in rows):
             raise HandoverFault(f"Run '{shown(run.run)}' has rulings out of order or on rows that it lacks.")
@@ -166,12 +169,15 @@ def session_from_files(files: Mapping[str, bytes], folder: str) -> ExportSession
             )
         if row["kind"] not in KINDS:
             raise Place(names[RUNS], line, "kind").refuse(f"'{shown(row['kind'])}' is none of {', '.join(KINDS)}")
+        if row["decision"] not in (None, "", *DECISIONS):
+            where = Place(names[RUNS], line, "decision")
+            raise where.refuse(f"'{shown(row['decision'])}' is none of {', '.join(DECISIONS)}")
         session = row["session"] or ""
         setup = _setup(row, names[RUNS], line)
         readings, rulings = _readings(by_run.pop(row["run"], []), names[READINGS], row["stamp_halfwidth_s"])
         about = {column.name: row[column.name] for column, _ in ABOUT}
         del about["session"], about["stamp_halfwidth_s"]
-        for name in ("name", "note", "recorded_at", "stamp_source"):
+        for name in _TEXTS:
             about[name] = about[name] or ""
         runs.append(
             ExportRun(setup=setup, readings=readings, rulings=rulings, no_answer=row["no_answer"] or "", **about)

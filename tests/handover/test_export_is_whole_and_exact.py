@@ -47,10 +47,13 @@ def test_any_session_reads_back_as_it_was(runs, title, note, source, time_s, dat
                 name=note,
                 note=note,
                 stamp_source=source,
+                marks=source,
+                decision=data.draw(st.sampled_from(["", "keep", "look", "discard"])),
+                decision_reason=note,
                 answer=None,
                 no_answer=note,
                 start_s=data.draw(st.none() | st.floats(0, 100)),
-                kind=data.draw(st.sampled_from(["measured", "rehearsal", "demo"])),
+                kind=data.draw(st.sampled_from(["measured", "still-air", "rehearsal", "imported"])),
                 invented=data.draw(st.booleans()),
                 readings=Readings(
                     tuple(time_s), tuple(90.0 - t / 1e4 for t in time_s), data.draw(st.floats(0, 1))
@@ -313,6 +316,7 @@ def test_a_damaged_export_is_read_or_refused(name, at, cut, put):
         (ExportSession("half a pair", (run_of("a", note="\ud800"),)), "no file can hold"),
         (ExportSession("nameless", (run_of(""),)), "needs a name"),
         (ExportSession("kind", (run_of("a", kind="guess"),)), "a kind out of"),
+        (ExportSession("decision", (run_of("a", decision="perhaps"),)), "a decision"),
         (ExportSession("time", (run_of("a", recorded_at="yesterday"),)), "ISO 8601"),
         (ExportSession("rulings", (run_of("a", rulings=(Ruling(99, True),)),)), "rulings"),
     ],
