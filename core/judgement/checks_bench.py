@@ -6,7 +6,9 @@ from __future__ import annotations
 
 from math import sqrt
 
+from core.convection.flow import drift_rel
 from core.judgement.evidence import COMMON_PRACTICE, Evidence, Finding, Rule, beyond, unknown
+from core.judgement.published import middle
 
 BIOT_LUMPED = 0.1
 REPEAT_REL = 0.025
@@ -24,9 +26,7 @@ def air_drift(evidence: Evidence) -> Finding:
     outcome = beyond(abs(drift), limit, 3.0)
     if outcome == "good":
         return Finding("good", drift, limit, "The air held its temperature.")
-    return Finding(
-        outcome, drift, limit, f"The air changed by {drift:+.1f} K: let the room settle, then repeat."
-    )
+    return Finding(outcome, drift, limit, f"The air changed by {drift:+.1f} K: let the room settle, then repeat.")
 
 
 def airspeed_drift(evidence: Evidence) -> Finding:
@@ -35,13 +35,11 @@ def airspeed_drift(evidence: Evidence) -> Finding:
     limit = evidence.setup.limits.velocity_drift_rel
     if after is None or not before:
         return unknown("Measure the airspeed after the run too: its drift is not known.", limit)
-    drift = after / before - 1.0
+    drift = drift_rel(before, after)
     outcome = beyond(abs(drift), limit, 3.0)
     if outcome == "good":
         return Finding("good", drift, limit, "The airspeed held.")
-    advice = (
-        f"The airspeed changed by {100 * drift:+.1f} %: lock the damper, free inlet and outlet, then repeat."
-    )
+    advice = f"The airspeed changed by {100 * drift:+.1f} %: lock the damper, free inlet and outlet, then repeat."
     return Finding(outcome, drift, limit, advice)
 
 
@@ -81,14 +79,10 @@ def model(evidence: Evidence) -> Finding:
     """Biot number, and whether the model fits it."""
     fit = evidence.fit
     if fit.model != "lumped":
-        return Finding(
-            "good", fit.biot, BIOT_LUMPED, f"Conduction inside the body is in the model ({fit.model})."
-        )
+        return Finding("good", fit.biot, BIOT_LUMPED, f"Conduction inside the body is in the model ({fit.model}).")
     if fit.biot <= BIOT_LUMPED:
         return Finding("good", fit.biot, BIOT_LUMPED, "The body may be taken as one temperature.")
-    advice = (
-        "The body is not at one temperature: give its conductivity, so that the model has conduction inside."
-    )
+    advice = "The body is not at one temperature: give its conductivity, so that the model has conduction inside."
     return Finding("look", fit.biot, BIOT_LUMPED, advice)
 
 
@@ -100,26 +94,21 @@ def material(evidence: Evidence) -> Finding:
     outcome = beyond(abs(off), limit, 3.0)
     if outcome == "good":
         return Finding("good", off, limit, "The mass fits the sizes and the material.")
-    advice = (
-        f"The body weighs {100 * off:+.0f} % against its sizes and material: check material, sizes and mass."
-    )
+    advice = f"The body weighs {100 * off:+.0f} % against its sizes and material: check material, sizes and mass."
     return Finding(outcome, off, limit, advice)
 
 
 def expected_band(evidence: Evidence) -> Finding:
-    """h against the published correlation, of those that hold here, that it agrees with best."""
-    valid = [one for one in evidence.expected if one.in_range]
-    if not valid:
+    """h against the middle one of the published correlations that hold here."""
+    used = middle(evidence.expected)
+    if used is None:
         return unknown("No published correlation holds for this bench.")
-    best = min(valid, key=lambda one: abs(evidence.fit.h_W_m2K / one.h_W_m2K - 1.0) / one.band_rel)
-    off, limit = evidence.fit.h_W_m2K / best.h_W_m2K - 1.0, sqrt(best.band_rel**2 + evidence.h_U95_rel**2)
+    off, limit = evidence.fit.h_W_m2K / used.h_W_m2K - 1.0, sqrt(used.band_rel**2 + evidence.h_U95_rel**2)
     outcome = beyond(abs(off), limit, 2.5)
     if outcome == "good":
-        return Finding("good", off, limit, "h lies within the published band.", best.source)
-    advice = (
-        f"h is {100 * off:+.0f} % off the published value: check material, sizes, exposed faces, airspeed."
-    )
-    return Finding(outcome, off, limit, advice, best.source)
+        return Finding("good", off, limit, "h lies within the published band.", used.source)
+    advice = f"h is {100 * off:+.0f} % off the published value: check material, sizes, exposed faces, airspeed."
+    return Finding(outcome, off, limit, advice, used.source)
 
 
 def earlier_runs(evidence: Evidence) -> Finding:
@@ -166,18 +155,14 @@ RADIATION = Rule(
     f"{COMMON_PRACTICE}: at a tenth, an emissivity known to a fifth adds 2 % to h",
     radiation,
 )
-STEM = Rule(
-    "stem share", "", f"{COMMON_PRACTICE}: at a tenth, a stem loss known to a fifth adds 2 % to h", stem
-)
+STEM = Rule("stem share", "", f"{COMMON_PRACTICE}: at a tenth, a stem loss known to a fifth adds 2 % to h", stem)
 MIXED = Rule(
     "mixed convection",
     "",
     "Gr/Re² far below 1 for forced flow (Incropera et al., Fundamentals of Heat and Mass Transfer, 9.9)",
     mixed_convection,
 )
-MODEL = Rule(
-    "Biot number", "", "Bi < 0.1 for one temperature in the whole body (Incropera et al., 5.2)", model
-)
+MODEL = Rule("Biot number", "", "Bi < 0.1 for one temperature in the whole body (Incropera et al., 5.2)", model)
 MATERIAL = Rule(
     "material",
     "",

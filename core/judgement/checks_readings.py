@@ -33,9 +33,7 @@ def span(evidence: Evidence) -> Finding:
     ratio = (used[0] - fit.asymptote_C) / last
     if ratio >= limit:
         return Finding("good", ratio, limit, "The readings span enough of the cooling.")
-    advice = (
-        f"Start hotter or record longer: the excess over the air should fall to 1/{limit:g} of its start."
-    )
+    advice = f"Start hotter or record longer: the excess over the air should fall to 1/{limit:g} of its start."
     return Finding("again" if log(max(ratio, 1.0)) < 0.7 * log(limit) else "look", ratio, limit, advice)
 
 
@@ -86,9 +84,7 @@ def refresh(evidence: Evidence) -> Finding:
         return unknown("The taps do not show the display's refresh.", set_s)
     if abs(found - set_s) <= REFRESH_MISMATCH * found:
         return Finding("good", found, set_s, "The taps fit the display's refresh.")
-    advice = (
-        f"The taps follow a display that renews every {found:.2f} s: set the refresh to that and fit again."
-    )
+    advice = f"The taps follow a display that renews every {found:.2f} s: set the refresh to that and fit again."
     return Finding("look", found, set_s, advice)
 
 
@@ -118,11 +114,7 @@ def start(evidence: Evidence) -> Finding:
         f"The first {trimmed_s:.0f} s do not follow the curve and were left out: have the fan at speed before the "
         "first reading, and check the sensor's lag."
     )
-    return (
-        Finding("again", share, limit, advice)
-        if share > limit
-        else Finding("look", share, START_SHARE, advice)
-    )
+    return Finding("again", share, limit, advice) if share > limit else Finding("look", share, START_SHARE, advice)
 
 
 def pattern(evidence: Evidence) -> Finding:
@@ -137,9 +129,7 @@ def pattern(evidence: Evidence) -> Finding:
         "The curve does not follow the readings, so something changed during the run: look at airspeed, inlet, "
         "air temperature and the display's settings, then repeat."
     )
-    return Finding(
-        "again" if chance < PATTERN_PROBABILITY**3 else "look", chance, PATTERN_PROBABILITY, advice
-    )
+    return Finding("again" if chance < PATTERN_PROBABILITY**3 else "look", chance, PATTERN_PROBABILITY, advice)
 
 
 def asymptote(evidence: Evidence) -> Finding:

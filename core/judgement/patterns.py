@@ -86,9 +86,7 @@ def repeated_share(reading_C: Sequence[float]) -> float:
 
 def display_step(reading_C: Sequence[float], resolution_K: float) -> float:
     """The step that the shown numbers have in common [K], as a multiple of a hundredth of `resolution_K`."""
-    steps = np.round(np.abs(np.diff(np.asarray(reading_C, dtype=float))) / (0.01 * resolution_K)).astype(
-        np.int64
-    )
+    steps = np.round(np.abs(np.diff(np.asarray(reading_C, dtype=float))) / (0.01 * resolution_K)).astype(np.int64)
     return float(np.gcd.reduce(steps)) * 0.01 * resolution_K
 
 

@@ -30,15 +30,31 @@ class Line:
     scatter: float
 
 
+def line_covariance(x: Vector, slope: float, joint: Vector, scatter: float = 0.0) -> Vector:
+    """Covariance of (intercept, slope), shape (2, 2), from points at abscissae `x` with errors `joint`."""
+    design = np.stack([np.ones(len(x)), x], axis=1)
+    return _inverse(design.T @ _weight(slope, joint, scatter) @ design)
+
+
+def _inverse(matrix: Vector) -> Vector:
+    return np.asarray(np.linalg.inv(matrix), dtype=np.float64)
+
+
+def _weight(slope: float, joint: Vector, scatter: float) -> Vector:
+    n = len(joint) // 2
+    xx, xy, yy = joint[:n, :n], joint[:n, n:], joint[n:, n:]
+    return _inverse(yy - slope * (xy + xy.T) + slope**2 * xx + (scatter**2 + _FLOOR) * np.eye(n))
+
+
 def _solve(x: Vector, y: Vector, joint: Vector, scatter: float) -> tuple[float, float, Vector, float]:
     """Intercept, slope, their covariance and chi-square, at a given extra scatter of y."""
     n = len(x)
-    xx, xy, yy = joint[:n, :n], joint[:n, n:], joint[n:, n:] + (scatter**2 + _FLOOR) * np.eye(n)
+    xx, xy = joint[:n, :n], joint[:n, n:]
     observed = np.stack([np.ones(n), x], axis=1)
     slope = float(np.polyfit(x, y, 1)[0])
     intercept = float(np.mean(y) - slope * np.mean(x))
     for _ in range(100):
-        weight = np.linalg.inv(yy - slope * (xy + xy.T) + slope**2 * xx)
+        weight = _weight(slope, joint, scatter)
         residual = y - intercept - slope * x
         adjusted = x - (xy - slope * xx) @ weight @ residual
         design = np.stack([np.ones(n), adjusted], axis=1)
@@ -48,7 +64,7 @@ def _solve(x: Vector, y: Vector, joint: Vector, scatter: float) -> tuple[float, 
         if abs(slope - before) <= 1e-13 * max(1.0, abs(slope)):
             break
     residual = y - intercept - slope * x
-    return intercept, slope, np.linalg.inv(weighted @ design), float(residual @ weight @ residual)
+    return intercept, slope, _inverse(weighted @ design), float(residual @ weight @ residual)
 
 
 def fit_line(x: Vector, y: Vector, joint: Vector) -> Line:
@@ -81,9 +97,7 @@ def fit_line(x: Vector, y: Vector, joint: Vector) -> Line:
     """
     n = len(x)
     if n < 2 or float(np.ptp(x)) < 1e-9:
-        raise NoAnswer(
-            "A law over speeds needs runs at two different speeds at least; measure one more speed."
-        )
+        raise NoAnswer("A law over speeds needs runs at two different speeds at least; measure one more speed.")
     intercept, slope, spread, chi_square = _solve(x, y, joint, 0.0)
     scatter = 0.0
     if n > 2 and chi_square_tail(chi_square, n - 2) < SIGNIFICANCE:

@@ -47,9 +47,7 @@ class Expanded:
     U: float
 
 
-def covariance(
-    inputs: Sequence[Input], correlations: Mapping[tuple[str, str], float] | None = None
-) -> Vector:
+def covariance(inputs: Sequence[Input], correlations: Mapping[tuple[str, str], float] | None = None) -> Vector:
     """Covariance matrix of the inputs, shape (n, n), from their u and the correlation coefficients by name."""
     u = np.array([one.u for one in inputs])
     place = {one.name: i for i, one in enumerate(inputs)}
@@ -92,9 +90,7 @@ def coverage_factor(dof: float, coverage: float = 0.95) -> float:
     return t_quantile(coverage, dof if dof == inf or dof > 1e6 else max(1.0, floor(dof)))
 
 
-def expand(
-    value: float, row: Vector, matrix: Vector, dofs: Sequence[float], coverage: float = 0.95
-) -> Expanded:
+def expand(value: float, row: Vector, matrix: Vector, dofs: Sequence[float], coverage: float = 0.95) -> Expanded:
     """One output's u, shares, ν_eff, k and U from its sensitivities `row` (n,) and the input covariance (n, n)."""
     joint = matrix @ row
     variance = float(row @ joint)
@@ -139,7 +135,5 @@ def propagate(
     rows = np.atleast_2d(sensitivities(model, inputs))
     matrix = covariance(inputs, correlations)
     dofs = [one.dof for one in inputs]
-    outputs = tuple(
-        expand(float(y), row, matrix, dofs, coverage) for y, row in zip(values, rows, strict=True)
-    )
+    outputs = tuple(expand(float(y), row, matrix, dofs, coverage) for y, row in zip(values, rows, strict=True))
     return outputs, rows @ matrix @ rows.T

@@ -87,9 +87,7 @@ def t_quantile(coverage: float, dof: float) -> float:
     JCGM 100:2008, Evaluation of measurement data (GUM), G.3 and table G.2.
     """
     if not 0.0 < coverage < 1.0 or not dof > 0.0:
-        raise ValueError(
-            f"Coverage must lie in 0 to 1 and degrees of freedom above 0, not at {coverage}, {dof}."
-        )
+        raise ValueError(f"Coverage must lie in 0 to 1 and degrees of freedom above 0, not at {coverage}, {dof}.")
     tail = 1.0 - coverage
     low, high = 0.0, 1.0
     while t_tail(high, dof) > tail:

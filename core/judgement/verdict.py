@@ -46,7 +46,5 @@ def conclude(checks: Sequence[Check]) -> tuple[Verdict, str]:
     for outcome in _WORST:
         for check in checks:
             if check.outcome == outcome:
-                return _WORD[
-                    outcome
-                ], check.advice if outcome != "good" else "Every check is good: keep the run."
+                return _WORD[outcome], check.advice if outcome != "good" else "Every check is good: keep the run."
     return "keep", "There was nothing to check."
