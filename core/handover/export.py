@@ -34,6 +34,16 @@ def export_session(session: ExportSession, folder: Path) -> None:
         if folder.exists() and _is_same(folder, files):
             return
         _refuse_foreign(folder)
+    except OSError as error:
+        raise _unfinished(folder, error) from None
+    write_folder(folder, files)
+
+
+def write_folder(folder: Path, files: Mapping[str, bytes]) -> None:
+    """Put a folder with these files, and no others, in the place of `folder`, whole or not at all.
+
+    Raises HandoverFault where that fails; what was there before then still stands."""
+    try:
         folder.parent.mkdir(parents=True, exist_ok=True)
         new = Path(tempfile.mkdtemp(prefix=f".{folder.name}.new-", dir=folder.parent))
         try:
@@ -45,10 +55,12 @@ def export_session(session: ExportSession, folder: Path) -> None:
         finally:
             shutil.rmtree(new, ignore_errors=True)
     except OSError as error:
-        raise HandoverFault(
-            f"The export to {shown(str(folder))} was not finished ({shown(error.strerror or str(error))}); "
-            "what was there before still stands."
-        ) from None
+        raise _unfinished(folder, error) from None
+
+
+def _unfinished(folder: Path, error: OSError) -> HandoverFault:
+    reason = shown(error.strerror or str(error))
+    return HandoverFault(f"{shown(str(folder))} was not written ({reason}); what was there before still stands.")
 
 
 def read_session(folder: Path) -> ExportSession:
