@@ -17,7 +17,7 @@ from mobileapp.device.find import find_device
 from mobileapp.model import Model
 from mobileapp.navigation import Navigator
 from mobileapp.theme import look, register_fonts
-from mobileapp.trace import trace
+from mobileapp.trace import TARGETS_EVERY_S, trace
 
 BACK_KEY = 27
 
@@ -32,6 +32,7 @@ class CooltallyApp(App):
         self._data = data
         self._demo = demo
         self.navigator: Navigator | None = None
+        self._held: set[int] = set()
 
     def get_application_config(self, *_args: Any, **__: Any) -> str:
         return ""
@@ -64,7 +65,7 @@ class CooltallyApp(App):
             self.navigator.go(trail[-1][0], **trail[-1][1])
         else:
             self.navigator.go("home")
-            if self.model.tally is not None:
+            if self.model.pad is not None:
                 self.navigator.go("record")
 
     def _prefer(self, _model: Model, liked: preferences.Preferences) -> None:
@@ -74,9 +75,34 @@ class CooltallyApp(App):
             Clock.schedule_once(lambda _: self._put_up(), 0)
 
     def on_start(self) -> None:
-        Window.bind(on_keyboard=self._keyboard)
+        Window.bind(on_keyboard=self._keyboard, on_key_down=self._key_down, on_key_up=self._key_up)
+        Window.bind(on_touch_down=self._stamp_touch, focus=lambda *_args: self._held.clear())
+        if trace.on:
+            Clock.schedule_interval(lambda _dt: trace.targets(self.navigator, Window.height), TARGETS_EVERY_S)
         Clock.schedule_once(lambda _: trace("ready", stamps=self.model.device.stamps.name), 0)
         Clock.schedule_once(lambda _: threading.Thread(target=_preload, daemon=True).start(), 0.5)
+
+    def _stamp_touch(self, _window: Any, touch: Any) -> bool:
+        """Every touch gets its stamp as it is dispatched, whatever it lands on: none is taken for another."""
+        if getattr(touch, "button", None) not in ("scrollup", "scrolldown", "scrollleft", "scrollright"):
+            touch.ud["stamp"] = self.model.device.stamps.touch(touch)
+        return False
+
+    def _key_down(self, _window: Any, key: int, _scan: int, character: str | None, modifiers: list[str]) -> bool:
+        """Once a press: repeats of a held key are swallowed where the screen takes keys."""
+        stamp = self.model.device.stamps.key()
+        page = self.navigator.current_screen if self.navigator else None
+        if not hasattr(page, "key") or set(modifiers) - {"numlock", "capslock"}:
+            return False
+        if key in self._held:
+            return True
+        if page.key(key, character or "", stamp):
+            self._held.add(key)
+            return True
+        return False
+
+    def _key_up(self, _window: Any, key: int, *_args: Any) -> None:
+        self._held.discard(key)
 
     def _keyboard(self, _window: Any, key: int, *_args: Any) -> bool:
         return key == BACK_KEY and self.navigator is not None and self.navigator.back()

@@ -15,7 +15,7 @@ class RunView:
 
     run: str
     number: int
-    kind: str  # forced | still-air | rehearsal
+    kind: str  # measured | still-air | rehearsal | imported
     mode: str  # change | beat
     started: str
     open: bool
@@ -54,7 +54,8 @@ class PadView:
     """The running run as the pad shows it.
 
     `state` is `waiting` before the first reading, `running`, or `ended`. `shown_C` is the newest reading that
-    counts, `next_C` the one that a single touch would add. `marks` are what was marked so far."""
+    counts, `next_C` the one that a single touch would add. `marks` are what was marked so far; `entered` the last
+    digits typed for a beat, `question_C` the numbers that they could mean where that is in doubt."""
 
     run: str
     kind: str
@@ -69,9 +70,10 @@ class PadView:
     marks: tuple[str, ...]
     start_C: float | None
     floor_C: float
-    target_C: float | None
     beat_s: float
     digits: int
+    entered: str
+    question_C: tuple[float, ...]
 
 
 @dataclass(frozen=True, slots=True)

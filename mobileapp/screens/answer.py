@@ -4,10 +4,11 @@ from __future__ import annotations
 
 from typing import Any
 
-from kivy.properties import BooleanProperty, NumericProperty, StringProperty
+from kivy.clock import Clock
+from kivy.properties import BooleanProperty, StringProperty
 
 from core.judgement.answer import Answer
-from mobileapp.figures import number, percent, significant, with_uncertainty
+from mobileapp.figures import clock_time, number, percent, significant, with_uncertainty
 from mobileapp.navigation import Page
 from mobileapp.trace import trace
 from mobileapp.widgets import badge, basics  # noqa: F401  the .kv of this screen uses them
@@ -39,8 +40,8 @@ class AnswerScreen(Page):
     has_answer = BooleanProperty(False)
     rehearsal = BooleanProperty(False)
     adoptable = BooleanProperty(False)
+    safe_words = StringProperty("")
     asking_reason = BooleanProperty(False)
-    share_of_target = NumericProperty(0.0)
 
     def arrive(self, run: str = "", **_aim: Any) -> None:
         self.run = run
@@ -50,9 +51,24 @@ class AnswerScreen(Page):
         self._decided()
         self.model.ask_answer(run, self._show, self._refused)
         self._show_truth()
+        self._count_down()
+        self._countdown = Clock.schedule_interval(self._count_down, 1.0)
 
     def leave(self) -> None:
         self.model.unbind(session=self._decided)
+        self._countdown.cancel()
+
+    def _count_down(self, *_args: Any) -> None:
+        """How long the body still burns."""
+        left_s = self.model.touch_safe_s(self.run)
+        if left_s is None:
+            self.safe_words = ""
+        elif left_s <= 0:
+            self.safe_words = _("By the fitted curve the body is now below 43 °C.")
+        else:
+            self.safe_words = _("Still hot: by the fitted curve below 43 °C in {time}.").format(
+                time=clock_time(left_s)
+            )
 
     def _clear(self) -> None:
         self.has_answer = False

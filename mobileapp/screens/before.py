@@ -6,7 +6,7 @@ from dataclasses import replace
 from typing import Any
 
 from kivy.clock import Clock
-from kivy.properties import BooleanProperty, ListProperty, StringProperty
+from kivy.properties import BooleanProperty, StringProperty
 
 from core.bench.setup import Setup
 from core.bench.setup_check import VELOCITIES, descriptions, problems, value_fault
@@ -33,7 +33,7 @@ class BeforeScreen(Page):
     advised_mode = StringProperty("")
     mode = StringProperty("change")
     ticked_all = BooleanProperty(False)
-    cautions = ListProperty()
+    choosing_way = BooleanProperty(False)
 
     def __init__(self, **options: Any) -> None:
         super().__init__(**options)
@@ -70,6 +70,7 @@ class BeforeScreen(Page):
 
     def _take_way(self, way: str) -> None:
         self._way = way
+        self.choosing_way = False
         self._build_entries()
 
     def take_mode(self, mode: str) -> None:
@@ -126,7 +127,7 @@ class BeforeScreen(Page):
             _("h about {h} W/(m²·K), τ about {tau} s.").format(
                 h=significant(expected.h_W_m2K, 2), tau=significant(expected.time_constant_s, 2)
             ),
-            _("The run takes about {time} min:s; the display first changes {rate} times a second.").format(
+            _("The run takes about {time} min; at first the display changes {rate} times a second.").format(
                 time=clock_time(expected.run_length_s), rate=significant(expected.changes_per_s_start, 2)
             ),
         ]
@@ -158,10 +159,6 @@ class BeforeScreen(Page):
 
     def _count(self) -> None:
         self.ticked_all = all(caution.name in self.model.ticked for caution in CAUTIONS)
-
-    def tick_all(self) -> None:
-        for child in self.ids.cautions.children:
-            child.ticked = True
 
     def no_replacement(self) -> str:
         return _(NO_REPLACEMENT)

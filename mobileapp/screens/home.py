@@ -42,7 +42,7 @@ class HomeScreen(Page):
         self.session_title = session.title if session else _("No session yet")
         unsaid = _("Say what stands on your bench first.")
         self.bench_words = bench_line(session.setup) if self.has_bench else unsaid
-        speed = self.model.next_velocity_m_s()
+        speed = self.model.next_speed
         self.next_words = speed and _("A good next speed: about {speed} m/s.").format(speed=speed)
         self._list_runs(session)
         self._list_sessions()

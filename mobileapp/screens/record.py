@@ -12,6 +12,7 @@ from mobileapp.figures import clock_time, number, percent, with_uncertainty
 from mobileapp.navigation import Page
 from mobileapp.views import Felt, PadView
 from mobileapp.widgets import basics, digits, hold, pad, simulated  # noqa: F401  the .kv of this screen uses them
+from mobileapp.widgets.basics import MainPress
 from mobileapp.widgets.digits import ERASE, SKIP
 from mobileapp.widgets.edge_layout import EdgeLayout  # noqa: F401
 from mobileapp.widgets.pad import USED_BUTTONS
@@ -39,9 +40,8 @@ class RecordScreen(Page):
     can_undo = BooleanProperty(False)
     asking_number = BooleanProperty(False)
     rehearsal = BooleanProperty(False)
-    entered = StringProperty("")
+    asking_which = BooleanProperty(False)
     beat_prefix = StringProperty("")
-    beat_share = ObjectProperty(0.0)
     beat_word = StringProperty("")
 
     def __init__(self, **options: Any) -> None:
@@ -56,7 +56,6 @@ class RecordScreen(Page):
         self.hand = self.model.preferences.hand
         self.ids.pad.flash_wanted = self.model.preferences.flash
         self.asking_number = False
-        self.entered = ""
         self._ticker = Clock.schedule_interval(self._tick, STATUS_PERIOD_S)
         self._paint()
         self._paint_live()
@@ -94,11 +93,17 @@ class RecordScreen(Page):
         decimals = self._decimals(view)
         self.start_text = number(view.start_C, decimals)
         pad_widget = self.ids.pad
-        shown = view.start_C if self.waiting else view.shown_C
+        shown = view.start_C if self.waiting or view.shown_C is None else view.shown_C
         pad_widget.figure = f"{number(shown, decimals)}"
-        if self.waiting:
+        if self.waiting and self.beat_mode:
+            pad_widget.caption = _("Tap to start the beat")
+            pad_widget.hint = _("Set the number that the display shows about now with the keys at the edge.")
+        elif self.waiting:
             pad_widget.caption = _("Tap when the display becomes {reading} °C").format(reading=self.start_text)
             pad_widget.hint = _("Set the first number with the keys at the edge.")
+        elif self.beat_mode:
+            pad_widget.caption = ""
+            pad_widget.hint = _("Type the last digits that the display shows at the beat.")
         else:
             pad_widget.caption = _("next {reading} °C").format(reading=number(view.next_C, decimals))
             pad_widget.hint = ""
@@ -134,7 +139,6 @@ class RecordScreen(Page):
             return
         since = view.elapsed_from_s
         self.clock_text = clock_time(self.model.now_s() - since) if since is not None else "0:00"
-        self.model.watch_sleep()
 
     # ------------------------------------------------------------------ taps
 
@@ -215,37 +219,33 @@ class RecordScreen(Page):
 
     # ------------------------------------------------------------------ beat
 
-    def digit(self, name: str, stamp: Stamp | None = None) -> None:
+    def digit(self, name: str, stamp: Stamp) -> None:
         """One of the digit keys: the last digits of the display at this beat."""
-        if self.view is None:
-            return
         if name == ERASE:
-            if self.entered:
-                self.entered = self.entered[:-1]
-                self._paint_entry(self.view)
-            else:
-                self.undo(stamp or self.model.stamp_now())
-            return
-        if name == SKIP:
-            self.entered = ""
-            self._felt(self.model.skip_beat())
-            self._paint_entry(self.view)
-            return
-        self.entered += name
-        if len(self.entered) >= self.view.digits:
-            entered, self.entered = self.entered, ""
-            self._felt(self.model.last_digits(entered))
-        self._paint_entry(self.view)
+            self.undo(stamp)
+        elif name == SKIP:
+            self._felt(self.model.skip_beat(stamp))
+        else:
+            self._felt(self.model.digit(name, stamp))
 
     def digit_touched(self, name: str, touch: Any) -> None:
         if getattr(touch, "button", None) in USED_BUTTONS:
             self.digit(name, self._stamp(touch))
 
+    def meant(self, reading_C: float, touch: Any) -> None:
+        """The person says which of two numbers the last digits were."""
+        self._felt(self.model.answer_question(reading_C, self._stamp(touch)))
+
     def _paint_entry(self, view: PadView) -> None:
-        if view.mode != "beat":
-            return
-        blanks = "▢" * max(0, view.digits - len(self.entered))
-        self.beat_prefix = f"{self.entered}{blanks}"
+        blanks = "▢" * max(0, view.digits - len(view.entered))
+        self.beat_prefix = f"{view.entered}{blanks}" if view.mode == "beat" else ""
+        box = self.ids.question
+        box.clear_widgets()
+        for reading in view.question_C:
+            key = MainPress(text=f"{number(reading, self._decimals(view))} °C", size_hint_y=1)
+            key.bind(on_press=lambda pressed, meant=reading: self.meant(meant, pressed.last_touch))
+            box.add_widget(key)
+        self.asking_which = bool(view.question_C)
 
     def _paint_beat(self, *_args: Any) -> None:
         beat = self.model.beat
@@ -254,5 +254,5 @@ class RecordScreen(Page):
         elif beat.index < 0:
             self.beat_word = _("in {count}").format(count=-beat.index)
         else:
-            self.beat_word = _("Beat {count}").format(count=beat.index)
+            self.beat_word = _("Beat {count}").format(count=beat.index + 1)
             self.ids.pad.confirm()

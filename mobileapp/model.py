@@ -1,0 +1,510 @@
+"""The state behind the screens: the journal, the session at hand, the run that goes on, and the answers.
+
+Screens read frozen views and call methods; everything slow is done by the worker and delivered by the loop."""
+
+from __future__ import annotations
+
+from collections.abc import Callable
+from dataclasses import replace
+from datetime import datetime
+from functools import partial
+from typing import Any
+
+from kivy.clock import Clock
+from kivy.event import EventDispatcher
+from kivy.properties import ObjectProperty, StringProperty
+
+from core.bench.readings import Readings, Ruling
+from core.bench.setup import Setup
+from core.bench.setup_file import setup_to_text
+from core.recording.events import (
+    BenchDescribed,
+    Decided,
+    MeasuredAfter,
+    Ruled,
+    RunEnded,
+    RunOpened,
+    SessionOpened,
+    StartMoved,
+)
+from core.recording.opening import open_journal
+from core.recording.tally import Tally
+from mobileapp import preferences as kept_preferences
+from mobileapp import rehearsing
+from mobileapp.beat import BeatPlayer
+from mobileapp.cautions import touch_safe_in_s
+from mobileapp.device.ports import Device, Stamp
+from mobileapp.figures import number
+from mobileapp.preferences import Preferences
+from mobileapp.records import Record, Records
+from mobileapp.running import Running
+from mobileapp.views import BeatView, Felt, LiveFit, PadView, RunView, SessionView, TruthView
+from mobileapp.words import _
+from mobileapp.worker import LatestWorker
+
+FIRST_FIT = 6  # readings before a fit is tried while the run goes on
+USUAL_START_C = 85.0
+FORGOTTEN_S = 3600.0
+CLOCK_BREAK_S = 120.0
+
+Then = Callable[[Any], None]
+Failed = Callable[[str], None]
+
+
+class Model(EventDispatcher):
+    """One journal, one session at hand, at most one run going on."""
+
+    preferences = ObjectProperty(Preferences())
+    session: SessionView | None = ObjectProperty(None, allownone=True)
+    sessions: tuple[SessionView, ...] = ObjectProperty(())
+    pad: PadView | None = ObjectProperty(None, allownone=True)
+    live = ObjectProperty(LiveFit(None, "", 0))
+    beat: BeatView | None = ObjectProperty(None, allownone=True)
+    next_speed = StringProperty("")
+    notice = StringProperty("")
+
+    def __init__(self, device: Device, liked: Preferences, **options: Any) -> None:
+        super().__init__(**options)
+        self.device = device
+        self.preferences = liked
+        self.ticked: set[str] = set()
+        self.simulated_display: Callable[[], str] | None = None
+        self._opened = open_journal(device.data, wall_time=device.clock.wall_iso())
+        self._records = Records(self._opened.journal)
+        self._worker = LatestWorker(lambda call: Clock.schedule_once(lambda _dt: call(), 0))
+        self._answers: dict[int, Any] = {}
+        self._running: Running | None = None
+        self._warm: Any = None
+        self._beats = BeatPlayer(device.clock, device.sounds, device.haptics, Clock.schedule_once, self._beaten)
+        self.notice = " ".join(self._opened.notes)
+        opened = self._records.sessions()
+        if opened:
+            self._resume(opened[-1].session)
+
+    # ------------------------------------------------------------------ preferences
+
+    def prefer(self, **changes: Any) -> None:
+        """Change and keep what this person likes."""
+        liked = replace(self.preferences, **changes)
+        kept_preferences.write(self.device.data, liked)
+        if self._running is not None:
+            self._running.preferences = liked
+        self.preferences = liked
+
+    # ------------------------------------------------------------------ sessions
+
+    def new_session(self, title: str = "", invented: bool = False) -> int:
+        """Begin a session; the bench of the one before is carried on."""
+        setup = self.session.setup if self.session and not self.session.invented else None
+        now = self.device.clock.wall_iso()
+        title = title or _("Session of {day}").format(day=now[:16].replace("T", " "))
+        kept = self._opened.journal.open_session(SessionOpened(title, now, invented))
+        if setup is not None:
+            self._records.keep(kept.session, None, BenchDescribed(setup_to_text(setup)))
+        self.ticked = set()
+        self.open_session(str(kept.session))
+        return kept.session
+
+    def open_session(self, session: str) -> None:
+        """Bring a session to hand and have its answers worked out."""
+        self.session = self._records.session_view(int(session), self._known_answer)
+        self._list_sessions()
+        for view in self.session.runs:
+            if not view.open:
+                self.ask_answer(view.run, self._answered, self._unanswered)
+
+    def _list_sessions(self) -> None:
+        opened = reversed(self._records.sessions())
+        self.sessions = tuple(self._records.session_view(kept.session, None) for kept in opened)
+
+    def _session_number(self) -> int:
+        return int(self.session.session) if self.session else self.new_session()
+
+    def _refresh(self) -> None:
+        if self.session is not None:
+            self.session = self._records.session_view(int(self.session.session), self._known_answer)
+
+    def save_setup(self, setup: Setup) -> None:
+        """The bench of the session from now on."""
+        session = self._session_number()
+        if self._records.session_setup(session) != setup:
+            self._records.keep(session, None, BenchDescribed(setup_to_text(setup)))
+        self._refresh()
+
+    # ------------------------------------------------------------------ runs
+
+    def _record(self, run: str) -> Record:
+        return self._records.run(int(run))
+
+    def run_view(self, run: str) -> RunView | None:
+        return self._record(run).view(self._known_answer(int(run))) if run else None
+
+    def run_title(self, run: str) -> str:
+        record = self._record(run)
+        name = _("Rehearsal {number}") if record.kind == "rehearsal" else _("Run {number}")
+        speed = record.velocity_m_s
+        return name.format(number=record.number) + (f" · {number(speed, 1)} m/s" if speed is not None else "")
+
+    def readings_of(self, run: str) -> Readings:
+        return self._record(run).state.readings
+
+    def setup_of(self, run: str) -> Setup:
+        return self._record(run).setup
+
+    def rulings_of(self, run: str) -> tuple[Ruling, ...]:
+        return self._record(run).state.rulings
+
+    def start_of(self, run: str) -> float | None:
+        return self._record(run).state.start_s
+
+    def _note(self, run: str, event: Any) -> None:
+        self._records.keep(self._record(run).session, int(run), event)
+        self._refresh()
+
+    def note_after(self, run: str, velocity_m_s: float | None, temperature_C: float | None) -> None:
+        self._note(run, MeasuredAfter(temperature_C, velocity_m_s))
+
+    def decide(self, run: str, decision: str, reason: str = "") -> None:
+        self._note(run, Decided(decision, reason))
+
+    def move_start(self, run: str, start_s: float | None) -> None:
+        self._note(run, StartMoved(start_s))
+
+    def rule(self, run: str, row: int, keep: bool) -> None:
+        self._note(run, Ruled(row, keep))
+
+    def redescribe(self, run: str, setup: Setup) -> None:
+        """Judge one run with another set-up, as after a slip in the bench."""
+        self._note(run, BenchDescribed(setup_to_text(setup)))
+
+    def asks_after(self, run: str) -> bool:
+        return self._record(run).kind in ("measured", "still-air")
+
+    # ------------------------------------------------------------------ answers
+
+    def ask(self, topic: str, work: Callable[[], Any], then: Then, failed: Failed) -> None:
+        """Have something slow done off the input path."""
+        self._worker.ask(topic, work, then, failed)
+
+    def _answer_key(self, run: int) -> tuple[Any, ...]:
+        record = self._records.run(run)
+        return record.setup, record.state.readings, record.state.rulings, record.state.start_s
+
+    def _known_answer(self, run: int) -> Any:
+        known = self._answers.get(run)
+        return known[1] if known and known[0] == self._answer_key(run) else None
+
+    def ask_answer(self, run: str, then: Then, failed: Failed) -> None:
+        """The answer to a run, worked out once for as long as nothing about the run changes."""
+        key = self._answer_key(int(run))
+        known = self._known_answer(int(run))
+        if known is not None:
+            then(known)
+            return
+        setup, readings, rulings, start_s = key
+
+        def work() -> Any:
+            from core.handover.recompute import answer_to
+
+            return answer_to(readings, setup, rulings, start_s)
+
+        def keep(answer: Any) -> None:
+            self._answers[int(run)] = (key, answer)
+            self._refresh()
+            then(answer)
+
+        self.ask(f"answer {run}", work, keep, failed)
+
+    def _answered(self, _answer: Any) -> None:
+        """An answer of the list has come; once it is the last one, the next speed can be advised."""
+        if self.session and all(run.open or run.h_W_m2K is not None for run in self.session.runs):
+            self.ask_series(self._advise, self._unanswered)
+
+    def _unanswered(self, _sentence: str) -> None:
+        """The list shows a dash; the run itself says why."""
+
+    def _advise(self, result: Any) -> None:
+        series, _left_out = result
+        self.next_speed = number(series.next_velocity_m_s, 1)
+
+    def ask_expectation(self, setup: Setup, then: Then, failed: Failed) -> None:
+        def work() -> Any:
+            from core.judgement.expect import expect
+
+            return expect(setup)
+
+        self.ask("expectation", work, then, failed)
+
+    def ask_series(self, then: Then, failed: Failed) -> None:
+        """The law over the session at hand, with the runs left out of it."""
+        session = self.export_session()
+
+        def work() -> Any:
+            from core.handover.recompute import law_over
+
+            return law_over(session, [run.answer or _refusal() for run in session.runs])
+
+        self.ask("series", work, then, failed)
+
+    def export_session(self) -> Any:
+        """The session at hand on plain values, with the answers known so far."""
+        from core.handover.session import ExportRun, ExportSession
+
+        view = self.session
+        if view is None:
+            return ExportSession("", ())
+        runs = []
+        for record in self._records.runs(int(view.session)):
+            state = record.state
+            if state.opened is None or not state.rows:
+                continue
+            truth = rehearsing.truth_of(state.opened)
+            kind = "demo" if view.invented else "rehearsal" if record.kind == "rehearsal" else "measured"
+            runs.append(
+                ExportRun(
+                    run=str(record.number),
+                    kind=kind,
+                    setup=record.setup,
+                    readings=state.readings,
+                    note=_decision_note(state.decision),
+                    invented=view.invented,
+                    recorded_at=state.opened.wall_time,
+                    stamp_source=state.opened.stamp_source,
+                    rulings=state.rulings,
+                    start_s=state.start_s,
+                    answer=self._known_answer(record.run),
+                    no_answer="" if self._known_answer(record.run) else "Not fitted yet.",
+                    true_h_W_m2K=truth.h_W_m2K if truth else None,
+                )
+            )
+        return ExportSession(view.title, tuple(runs))
+
+    def touch_safe_s(self, run: str) -> float | None:
+        """Seconds until the body of a run just made can be touched; None where nobody can know."""
+        record, answer = self._record(run), self._known_answer(int(run))
+        rows = record.state.rows
+        if answer is None or not rows or record.kind == "rehearsal":
+            return None
+        since_s = self.device.clock.now_s() - rows[-1].stamp_s
+        if not 0 <= since_s < FORGOTTEN_S:
+            return None
+        air_C = record.setup.air.temperature_C
+        left = touch_safe_in_s(rows[-1].reading_C, air_C, answer.time_constant_s)
+        return None if left is None else max(0.0, left - since_s)
+
+    # ------------------------------------------------------------------ the run that goes on
+
+    def begin_run(self, setup: Setup, seed: int | None = None, truth: str = "") -> None:
+        """Open a run in the journal and take it to the pad."""
+        kind = "rehearsal" if truth else "still-air" if setup.recording.kind == "still-air" else "measured"
+        stamps, clock = self.device.stamps, self.device.clock
+        opened = RunOpened(
+            kind, setup_to_text(setup), clock.wall_iso(), stamps.name, stamps.halfwidth_s, clock.slept_s(), seed, truth
+        )  # fmt: skip
+        kept = self._opened.journal.open_run(self._session_number(), opened)
+        self._take_up(kept.number)
+        self._refresh()
+
+    def begin_rehearsal(self, own_bench: bool, mode: str) -> None:
+        bench = self.session.setup if own_bench and self.session else None
+        plan = rehearsing.plan(bench, mode, self.device.clock.now_s())
+        self.begin_run(plan.setup, plan.seed, plan.truth)
+
+    def _take_up(self, run: int) -> None:
+        record = self._records.run(run)
+        setup = record.setup
+        tally = Tally(setup.thermometer.resolution_K, partial(self._records.keep, record.session, run), record.events)
+        display = rehearsing.display_of(record.state.opened, setup)
+        self.simulated_display = None if display is None else lambda: display.text(self.device.clock.now_s())
+        start_C = self._usual_start_C(record) if display is None else display.first_to_tap_C
+        self._warm = None
+        self.live = LiveFit(None, "", 0)
+        self._beats.sound_on, self._beats.vibration_on = self.preferences.click, self.preferences.vibration
+        self._running = Running(
+            str(run), record.kind, setup, tally, self.device, self._beats, start_C, self._run_changed
+        )
+        self._running.preferences = self.preferences
+        self._run_changed()
+
+    def _usual_start_C(self, record: Record) -> float:
+        """Where the last run of the session began."""
+        before = [r for r in self._records.runs(record.session) if r.run < record.run and r.state.rows]
+        same = [r for r in before if r.kind == record.kind]
+        step = record.setup.thermometer.resolution_K
+        start = same[-1].state.rows[0].reading_C if same else USUAL_START_C
+        return round(round(start / step) * step, 9)
+
+    def _run_changed(self) -> None:
+        if self._running is None:
+            self.pad = None
+            return
+        self.pad = self._running.pad()
+        self._refit()
+
+    def _refit(self) -> None:
+        running = self._running
+        if running is None:
+            return
+        readings, setup, warm = running.readings, running.setup, self._warm
+        if len(readings) < FIRST_FIT:
+            self.live = LiveFit(None, _("A first h after {count} readings.").format(count=FIRST_FIT), len(readings))
+            return
+
+        def work() -> Any:
+            from core.judgement.judge import judge
+
+            return judge(readings, setup, warm=warm)
+
+        def then(answer: Any) -> None:
+            if self._running is running:
+                self._warm = answer.fit
+                self.live = LiveFit(answer, "", len(readings))
+
+        def failed(sentence: str) -> None:
+            if self._running is running:
+                self.live = LiveFit(None, sentence, len(readings))
+
+        self.ask("live", work, then, failed)
+
+    def _beaten(self, beat: BeatView) -> None:
+        if self._running is not None:
+            self._running.beat(beat)
+            self.beat = beat
+
+    def now_s(self) -> float:
+        return self.device.clock.now_s()
+
+    def stamp_now(self) -> Stamp:
+        return Stamp(self.now_s(), self.device.stamps.halfwidth_s, "loop")
+
+    def start_at(self, reading_C: float) -> None:
+        """The first number that the pad waits for."""
+        if self._running is not None:
+            self._running.start_C = round(reading_C, 9)
+            self._run_changed()
+
+    def contact(self, stamp: Stamp) -> Felt:
+        return self._running.contact(stamp) if self._running else Felt(False)
+
+    def step(self, count: int, stamp: Stamp) -> Felt:
+        return self._running.step(count, stamp) if self._running else Felt(False)
+
+    def typed(self, reading_C: float, stamp: Stamp) -> Felt:
+        return self._running.typed(reading_C, stamp) if self._running else Felt(False)
+
+    def mark(self, name: str, stamp: Stamp) -> Felt:
+        return self._running.mark(name, stamp) if self._running else Felt(False)
+
+    def undo(self, stamp: Stamp) -> Felt:
+        return self._running.undo(stamp) if self._running else Felt(False)
+
+    def digit(self, name: str, stamp: Stamp) -> Felt:
+        return self._running.digit(name, stamp) if self._running else Felt(False)
+
+    def skip_beat(self, stamp: Stamp) -> Felt:
+        return self._running.skip_beat(stamp) if self._running else Felt(False)
+
+    def answer_question(self, reading_C: float, stamp: Stamp) -> Felt:
+        return self._running.answer_question(reading_C, stamp) if self._running else Felt(False)
+
+    def end(self) -> str | None:
+        """The run is over; returns it, or None where it holds no reading and there is nothing to answer."""
+        running, self._running = self._running, None
+        if running is None:
+            return None
+        running.end()
+        self.simulated_display = None
+        self.pad, self.beat = None, None
+        if self.preferences.click:
+            self.device.sounds.play("done")
+        self._refresh()
+        return running.run if len(running.readings) else None
+
+    def _resume(self, session: int) -> None:
+        """Open where the app was left, the running run included; one that cannot go on is closed and told."""
+        self.open_session(str(session))
+        still_open = [record for record in self._records.runs(session) if not record.state.ended]
+        for record in still_open[:-1]:
+            self._close_stale(record)
+        if still_open:
+            if self._clock_went_on(still_open[-1]):
+                self._take_up(still_open[-1].run)
+            else:
+                self._close_stale(still_open[-1])
+                self.notice = _("A run was open when the tablet was restarted. It ended with its last reading.")
+        self._refresh()
+
+    def _close_stale(self, record: Record) -> None:
+        rows = record.state.rows
+        opened = record.state.opened
+        last_s = rows[-1].stamp_s if rows else 0.0
+        self._records.keep(record.session, record.run, RunEnded(last_s, opened.slept_s if opened else 0.0))
+
+    def _clock_went_on(self, record: Record) -> bool:
+        """Whether stamps of that run and of now are on one clock: no restart of the device lies between."""
+        opened, rows = record.state.opened, record.state.rows
+        if opened is None:
+            return False
+        try:
+            wall_s = (datetime.now().astimezone() - datetime.fromisoformat(opened.wall_time)).total_seconds()
+        except (ValueError, TypeError):
+            return False
+        if not rows:
+            return wall_s < FORGOTTEN_S
+        clock_s = self.now_s() - rows[0].stamp_s
+        return 0.0 <= clock_s <= wall_s + CLOCK_BREAK_S and wall_s < 12 * FORGOTTEN_S
+
+    # ------------------------------------------------------------------ rehearsal
+
+    def rehearsal_truth(self, run: str) -> TruthView | None:
+        record = self._record(run)
+        return rehearsing.truth_view(record.state, record.setup)
+
+    def adopt_habit(self, run: str) -> None:
+        """The bench takes over the delay and scatter of this person's tap."""
+        truth = self.rehearsal_truth(run)
+        setup = self.session.setup if self.session else None
+        if truth is None or truth.lag_s is None or truth.jitter_s is None or setup is None:
+            return
+        habit = replace(
+            setup.recording,
+            tap_lag_s=round(truth.lag_s, 4),
+            tap_jitter_s=round(truth.jitter_s, 4),
+            tap_lag_u_s=round(truth.lag_u_s or 0.0, 4),
+        )
+        self.save_setup(replace(setup, recording=habit))
+
+    # ------------------------------------------------------------------ device
+
+    def tick(self, name: str, on: bool) -> None:
+        """A caution is ticked for this bench, for as long as this session is at hand."""
+        (self.ticked.add if on else self.ticked.discard)(name)
+
+    def watch_screen(self, on: bool) -> None:
+        self.device.screen.keep_on(on)
+
+    def pause(self) -> None:
+        """The app goes to the background: stamps heard by now belong to nothing that comes later."""
+        self.device.stamps.forget()
+
+    def resume(self) -> None:
+        """A run is never silently continued after the app was away."""
+        self.device.stamps.forget()
+        if self._running is not None:
+            self.notice = _("The app was away. The run goes on; readings missed meanwhile are simply missing.")
+
+    def close(self) -> None:
+        self._worker.close()
+        self._opened.close()
+
+
+def _refusal() -> Exception:
+    from core.errors import NoAnswer
+
+    return NoAnswer("It has no answer.")
+
+
+def _decision_note(decision: Any) -> str:
+    if decision is None:
+        return ""
+    return decision.decision + (f": {decision.reason}" if decision.reason else "")

@@ -1,0 +1,149 @@
+"""What a rehearsal is made of: a bench, a true h drawn by lot, and a display that falls as that h has it."""
+
+from __future__ import annotations
+
+import bisect
+import json
+import random
+import statistics
+from dataclasses import dataclass, replace
+from math import exp, floor, log
+
+import numpy as np
+
+from core.bench.setup import Body, Flow, Recording, Setup, Surrounding, Thermometer
+from core.cooling.lumped import lumped_model
+from core.errors import BenchError
+from core.judgement.expect import expect
+from core.recording.events import RunOpened
+from core.recording.run_state import RunState
+from mobileapp.views import TruthView
+
+LEAD_S = 5.0  # the display stands still at first, so that the person can get ready
+START_C = 86.0
+SPREAD = 0.25  # the true h lies within a quarter of the expected one, drawn evenly in its logarithm
+LENGTH_TAU = 4.0
+STRAY_S = 1.0  # a tap further than this from the middle of all delays belongs to no change
+SHORT_BENCH = Setup(
+    body=Body(shape="cylinder", diameter_m=0.006, length_m=0.1, material="aluminium", emissivity=0.05),
+    thermometer=Thermometer(resolution_K=1.0, refresh_s=0.3, accuracy_K=0.1),
+    recording=Recording(mode="change", beat_s=3.0),
+    air=Surrounding(temperature_C=23.0),
+    flow=Flow(velocity_m_s=10.0, duct_height_m=0.15, duct_width_m=0.15),
+)
+
+
+@dataclass(frozen=True, slots=True)
+class Truth:
+    """What only the simulator knows. `from_s` is the moment [s, monotonic clock] at which the cooling begins."""
+
+    h_W_m2K: float
+    start_C: float
+    from_s: float
+    phase_s: float
+
+
+@dataclass(frozen=True, slots=True)
+class Plan:
+    """A rehearsal about to begin."""
+
+    setup: Setup
+    seed: int
+    truth: str
+
+
+@dataclass(frozen=True, slots=True)
+class Display:
+    """The display as it is renewed: moments [s, monotonic clock] and what it then shows."""
+
+    times_s: tuple[float, ...]
+    shown_C: tuple[float, ...]
+    decimals: int
+    first_to_tap_C: float
+
+    def text(self, now_s: float) -> str:
+        """What the display shows at this moment."""
+        at = max(0, bisect.bisect_right(self.times_s, now_s) - 1)
+        return f"{self.shown_C[at]:.{self.decimals}f}"
+
+    def changes(self) -> dict[float, float]:
+        """The moment at which each number first appeared."""
+        first: dict[float, float] = {}
+        for time_s, shown in zip(self.times_s, self.shown_C, strict=True):
+            first.setdefault(shown, time_s)
+        return first
+
+
+def plan(bench: Setup | None, mode: str, now_s: float, seed: int | None = None) -> Plan:
+    """Draw a rehearsal on this bench, or on the short one."""
+    seed = random.SystemRandom().randrange(1, 2**31) if seed is None else seed
+    lot = random.Random(seed)
+    setup = bench or SHORT_BENCH
+    setup = replace(
+        setup,
+        recording=replace(setup.recording, mode=mode, kind="forced"),
+        air=replace(setup.air, temperature_end_C=None),
+        flow=replace(setup.flow, velocity_end_m_s=None),
+    )
+    try:
+        expected = expect(setup).h_W_m2K
+    except BenchError:
+        expected = 80.0
+    h = expected * exp(log(1 + SPREAD) * lot.uniform(-1, 1))
+    refresh = setup.thermometer.refresh_s
+    truth = {
+        "h_W_m2K": round(h, 6),
+        "start_C": START_C + lot.uniform(-0.4, 0.4),
+        "from_s": now_s + LEAD_S,
+        "phase_s": lot.uniform(0, refresh) if refresh else 0.0,
+    }
+    return Plan(setup, seed, json.dumps(truth))
+
+
+def truth_of(opened: RunOpened) -> Truth | None:
+    """The truth kept with a run; None for a run that was measured."""
+    if not opened.truth:
+        return None
+    try:
+        return Truth(**json.loads(opened.truth))
+    except (ValueError, TypeError):
+        return None
+
+
+def display_of(opened: RunOpened | None, setup: Setup) -> Display | None:
+    """The display that belongs to a rehearsal; the same again after the app was stopped."""
+    truth = truth_of(opened) if opened is not None and opened.run_kind == "rehearsal" else None
+    if truth is None:
+        return None
+    thermometer = setup.thermometer
+    step, refresh = thermometer.resolution_K, max(thermometer.refresh_s, 0.02)
+    model = lumped_model(setup, 1.0)
+    tau = model.body.capacity_J_K(truth.start_C) / (truth.h_W_m2K * model.body.area_m2)
+    length_s = LENGTH_TAU * tau
+    curve = model.curve(np.array([[log(truth.h_W_m2K), truth.start_C, 0.0]]), 0.0, length_s)
+    offsets = np.arange(truth.phase_s - LEAD_S - refresh, length_s, refresh)
+    inner = curve.at(np.maximum(offsets, 0.0))[:, 0]
+    cut = floor if thermometer.rounding == "down" else round
+    shown = tuple(round(cut(value / step) * step, 9) for value in inner)
+    decimals = max(0, len(f"{step:g}".partition(".")[2]))
+    first = round(shown[0] - (2 if step >= 0.5 else 10) * step, 9)
+    return Display(tuple(truth.from_s + offset for offset in offsets), shown, decimals, first)
+
+
+def truth_view(state: RunState, setup: Setup) -> TruthView | None:
+    """The true h, and the delay and scatter of the taps against the moments at which the display changed."""
+    truth = truth_of(state.opened) if state.opened else None
+    if truth is None:
+        return None
+    display = display_of(state.opened, setup)
+    if display is None or setup.recording.mode != "change":
+        return TruthView(truth.h_W_m2K, None, None, None, 0)
+    changes = display.changes()
+    delays = [row.stamp_s - changes[row.reading_C] for row in state.rows if row.reading_C in changes]
+    if len(delays) >= 3:
+        middle = statistics.median(delays)
+        delays = [delay for delay in delays if abs(delay - middle) < STRAY_S]
+    if len(delays) < 3:
+        return TruthView(truth.h_W_m2K, None, None, None, len(delays))
+    lag, jitter = statistics.fmean(delays), statistics.stdev(delays)
+    return TruthView(truth.h_W_m2K, lag, jitter, jitter / len(delays) ** 0.5, len(delays))
