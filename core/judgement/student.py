@@ -2,7 +2,7 @@
 
 from __future__ import annotations
 
-from math import erfc, exp, isinf, lgamma, log, pi, sqrt
+from math import erfc, exp, isinf, lgamma, log, log1p, pi, sqrt
 
 _TINY = 1e-300
 _CLOSE = 1e-15
@@ -92,15 +92,23 @@ def t_quantile(coverage: float, dof: float) -> float:
     low, high = 0.0, 1.0
     while t_tail(high, dof) > tail:
         low, high = high, 2.0 * high
-    while high - low > 1e-13 * high:
-        middle = 0.5 * (low + high)
-        if middle in {low, high}:
+    t = 0.5 * (low + high)
+    for _ in range(100):
+        excess = t_tail(t, dof) - tail
+        low, high = (t, high) if excess > 0.0 else (low, t)
+        newton = t + excess / (2.0 * _density(t, dof))
+        before, t = t, newton if low < newton < high else 0.5 * (low + high)
+        if abs(t - before) <= 1e-14 * t:
             break
-        if t_tail(middle, dof) > tail:
-            low = middle
-        else:
-            high = middle
-    return 0.5 * (low + high)
+    return t
+
+
+def _density(t: float, dof: float) -> float:
+    """Density of Student's t."""
+    if isinf(dof):
+        return exp(-0.5 * t * t) / sqrt(2.0 * pi)
+    scale = lgamma((dof + 1.0) / 2.0) - lgamma(dof / 2.0) - 0.5 * log(dof * pi)
+    return exp(scale - (dof + 1.0) / 2.0 * log1p(t * t / dof))
 
 
 def chi_square_tail(x: float, dof: int) -> float:
