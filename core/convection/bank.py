@@ -82,8 +82,9 @@ def zukauskas_bank(reynolds: float, prandtl: float, prandtl_ratio: float, bank: 
 
     Notes
     -----
-    10 ≤ Re ≤ 2e6, 0.7 ≤ Pr ≤ 500. Between Re = 100 and 1000 the source takes the single cylinder. In line only for
-    S_T/S_L > 0.7: closer, the rows hide in each other's wakes.
+    1e3 ≤ Re ≤ 2e6, 0.7 ≤ Pr ≤ 500. The table goes on down to Re = 10, but between 100 and 1000 it takes the
+    single cylinder for want of better and steps by a third at 1000, so that is counted as outside here. In line
+    only for S_T/S_L > 0.7: closer, the rows hide in each other's wakes.
 
     References
     ----------
@@ -221,7 +222,7 @@ def correlations(bank: Bank) -> tuple[Correlation, ...]:
             lambda Re, Pr, ratio: (deep if Re >= 1000.0 else 1.0) * zukauskas_bank(Re, Pr, ratio, bank),
             "stream",
             "prandtl",
-            (10.0, 2e6),
+            (1e3, 2e6),
             (0.7, 500.0),
             band,
             band_source,

@@ -164,9 +164,9 @@ def test_grimison_table_is_the_librarys_table():
 
 
 def test_grimison_staggered_stays_near_the_librarys_smoothing():
-    """The library smooths the 22 staggered entries and misses its own table by up to 6 %; here the table is met. It
-    hands its surface the two pitches the wrong way round, and between the entries the surface falls to a hundredth
-    where the table has gaps, so the surface is compared at the entries, not the function between them."""
+    """The library smooths the 22 staggered entries and misses its own table by up to 6 %; here the table is met.
+    It hands its surface the two pitches the wrong way round, and where the table has gaps the surface falls to
+    almost nothing, so the surface is compared at the entries, not the function between them."""
     entries = zip(conv_tube_bank.Grimson_ST_staggered, conv_tube_bank.Grimson_SL_staggered, strict=True)
     points = [(Re, a, b) for a, b in entries for Re in grid(2e3, 4e4, 5)]
     mine = [bank.grimison_bank(Re, 1.0, deep(a, b, True)) for Re, a, b in points]
