@@ -13,6 +13,7 @@ from core.convection import bank
 from core.convection.bank import Bank
 from core.convection.correlation import Correlation
 from core.convection.expected import expected, expected_for, family
+from core.convection.mixed import mixed
 from core.convection.natural import LAWS, combined, still_air
 from core.convection.numbers import biot, film_temperature_C, grashof, nusselt, rayleigh, reynolds, richardson
 from core.errors import OutOfRange
@@ -217,3 +218,15 @@ def test_forced_and_natural_convection_join_without_adding_up(forced, natural):
     larger = max(forced, natural)
     assert larger <= combined(forced, natural) * (1.0 + 1e-12)
     assert combined(forced, natural) <= 2.0**0.25 * larger * (1.0 + 1e-12)
+
+
+def test_buoyancy_has_no_say_at_bench_speeds_and_rules_in_creeping_air():
+    """A 16 mm rod at 90 °C: at 8 m/s Ri is under 1e-3 and buoyancy adds less than 0.1 %; at 0.1 m/s Ri is above 1
+    and the published rule adds a good deal."""
+    for velocity, low, high, least, most in ((8.0, 0.0, 1e-3, 0.0, 1e-3), (0.1, 1.0, 10.0, 0.05, 1.0)):
+        laws = family("cylinder", 0.016, 0.016)
+        forced = expected(laws, 0.016, velocity, 90.0, 23.0, 101325.0)[2].h_W_m2K
+        found = mixed("cylinder", 0.016, 0.016, velocity, forced, 90.0, 23.0, 101325.0)
+        assert low < found.richardson < high
+        assert least < found.added_rel < most
+        assert found.natural_h_W_m2K == still_air("cylinder", 0.016, 0.016, 90.0, 23.0, 101325.0).h_W_m2K
