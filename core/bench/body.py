@@ -5,6 +5,9 @@ from __future__ import annotations
 from dataclasses import dataclass
 from math import pi
 
+import numpy as np
+from numpy.typing import NDArray
+
 from core.bench.setup import Body
 from core.bench.solids import SOLIDS, solid
 from core.errors import BadSetup
@@ -38,6 +41,13 @@ class ThermalBody:
     def specific_heat_J_kgK(self, temperature_C: float) -> float:
         """Specific heat capacity at a temperature [°C], in J/(kg·K)."""
         return self.heat_capacity_J_kgK + self.heat_capacity_slope_J_kgK2 * (temperature_C - REFERENCE_C)
+
+    def capacity_J_K_at(self, temperature_C: NDArray[np.float64]) -> NDArray[np.float64]:
+        """Heat capacity m·c of the body at temperatures [°C] of any shape, in J/K."""
+        result: NDArray[np.float64] = self.mass_kg * (
+            self.heat_capacity_J_kgK + self.heat_capacity_slope_J_kgK2 * (temperature_C - REFERENCE_C)
+        )
+        return result
 
     def capacity_J_K(self, temperature_C: float) -> float:
         """Heat capacity m·c of the body at a temperature [°C], in J/K."""
@@ -78,8 +88,7 @@ def thermal_body(body: Body) -> ThermalBody:
     area = side + {"side": 0.0, "side+end": end, "all": 2 * end}[body.exposed]
     known = None
     if body.material is not None and (
-        body.material in SOLIDS
-        or None in (body.density_kg_m3, body.heat_capacity_J_kgK, body.conductivity_W_mK)
+        body.material in SOLIDS or None in (body.density_kg_m3, body.heat_capacity_J_kgK, body.conductivity_W_mK)
     ):
         known = solid(body.material)
 

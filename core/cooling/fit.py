@@ -26,6 +26,7 @@ class CoolingFit:
 
     h_W_m2K: float
     h_u_W_m2K: float  # standard uncertainty from readings, their fit and the air-temperature prior
+    h_u_fixed_air_W_m2K: float  # the part that stays if the asymptote were known
     h_total_W_m2K: float
     h_radiation_W_m2K: float
     h_stem_W_m2K: float

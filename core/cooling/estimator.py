@@ -1,0 +1,65 @@
+"""From readings to a coefficient: the entry `fit_cooling`."""
+
+from __future__ import annotations
+
+from collections.abc import Sequence
+from math import log
+
+import numpy as np
+
+from core.bench.readings import Readings, Ruling
+from core.bench.setup import Setup
+from core.cooling.asymptote import prior_of
+from core.cooling.fit import CoolingFit
+from core.cooling.gather import FEWEST, check, first_guess, gather
+from core.cooling.lumped import lumped_model
+from core.cooling.outcome import outcome
+from core.cooling.solve import solve
+from core.cooling.start import find_start, latest_start
+from core.errors import NoAnswer
+
+
+def fit_cooling(
+    readings: Readings,
+    setup: Setup,
+    *,
+    start_s: float | None = None,
+    rulings: Sequence[Ruling] = (),
+    warm: CoolingFit | None = None,
+    profile: bool = False,
+) -> CoolingFit:
+    """The coefficient of a run with its uncertainty, from what the display showed.
+
+    Parameters
+    ----------
+    readings : what the display showed and when
+    setup : the bench; `recording.mode` says how to read the rows
+    start_s : start of the fit [s] as a person set it; chosen from the data if None
+    rulings : a person's word on single rows
+    warm : an earlier fit of the same run, to begin the search with
+    profile : give the 95 % interval of h from its marginal posterior as well
+
+    Raises
+    ------
+    NoAnswer : the readings are too few, do not cool, or do not rise above the air.
+    """
+    check(readings, setup)
+    model = lumped_model(setup, readings.time_s[-1])
+    prior = prior_of(setup)
+    whole = gather(readings, setup, model, 0, rulings)
+    if warm is not None:
+        guess = np.array([log(warm.h_W_m2K), warm.start_C, warm.asymptote_shift_K])
+    else:
+        guess = first_guess(whole)
+    if start_s is not None:
+        start_row, by = int(np.searchsorted(np.array(readings.time_s), start_s - 1e-9)), "person"
+    else:
+        later = gather(readings, setup, model, latest_start(len(readings)), rulings)
+        start_row, by = find_start(whole, later, guess, prior), "program"
+    evidence = gather(readings, setup, model, start_row, rulings)
+    if np.count_nonzero(evidence.counts) < FEWEST:
+        raise NoAnswer(
+            f"Only {np.count_nonzero(evidence.counts)} readings are left in the fit, and it needs {FEWEST}: "
+            "move its start earlier, or keep more readings."
+        )
+    return outcome(readings, evidence, solve(evidence, guess, prior), prior, start_row, by, rulings, profile)

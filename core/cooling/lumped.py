@@ -1,0 +1,133 @@
+"""A body at one temperature, cooling by convection, radiation and its stem in air that may drift.
+
+m c(T) dT/dt = −(h A + G)(T − T∞(t)) − ε σ A (T⁴ − T_s⁴)
+
+With θ = T − T∞ and z = ln(θ₀/θ) this becomes dz/dt = f(z, t), nearly constant in time. It is solved by Picard
+iteration on Chebyshev nodes: no time stepping, and the solution can be evaluated anywhere in the window."""
+
+from __future__ import annotations
+
+from dataclasses import dataclass
+
+import numpy as np
+from numpy.typing import NDArray
+
+from core.bench.body import ThermalBody, thermal_body
+from core.bench.setup import Setup
+from core.cooling import chebyshev
+
+Array = NDArray[np.float64]
+
+STEFAN_BOLTZMANN_W_M2K4 = 5.670374419e-8  # CODATA 2018
+ZERO_C_K = 273.15
+TOLERANCE = 1e-11
+ROUNDS = 80
+PARAMETERS = ("ln h", "start", "asymptote")
+STEPS = np.array([1e-4, 1e-3, 1e-3])  # for central differences in the parameters
+LARGEST_Z = 30.0
+
+
+@dataclass(frozen=True, slots=True)
+class Curve:
+    """Temperatures over a record for one or more sets of parameters.
+
+    `sensor_C`, `body_C` and `rate_K_s` (of the sensor) stand on the Chebyshev nodes, shape (NODES, sets). The
+    sensor's own transient, of amplitude `fading_K` and time constant `lag_s`, comes on top."""
+
+    length_s: float
+    sensor_C: Array
+    body_C: Array
+    rate_K_s: Array
+    fading_K: Array
+    lag_s: float
+
+    def at(self, time_s: Array) -> Array:
+        """Sensor temperature [°C] at times [s], shape (len(time_s), sets); beyond it straight on."""
+        x = 2.0 * time_s / self.length_s - 1.0
+        inside = np.clip(x, -1.0, 1.0)
+        beyond = (x - inside) * self.length_s / 2.0
+        ends = np.where(x[:, None] < 0.0, self.rate_K_s[0], self.rate_K_s[-1])
+        result: Array = chebyshev.interpolation(inside) @ self.sensor_C + beyond[:, None] * ends
+        if self.lag_s > 0.0:
+            result = result + self.fading_K * np.exp(-np.maximum(time_s, 0.0) / self.lag_s)[:, None]
+        return result
+
+    def rate_at(self, time_s: Array) -> Array:
+        """Rate of the sensor temperature [K/s] of the first set at times [s], shape (len(time_s),)."""
+        x = np.clip(2.0 * time_s / self.length_s - 1.0, -1.0, 1.0)
+        result: Array = chebyshev.interpolation(x) @ self.rate_K_s[:, 0]
+        if self.lag_s > 0.0:
+            late = np.maximum(time_s, 0.0) / self.lag_s
+            result = result - self.fading_K[0] / self.lag_s * np.exp(-late)
+        return result
+
+
+@dataclass(frozen=True, slots=True)
+class LumpedModel:
+    """The bench as the lumped model needs it; parameters are (ln h, T at the start, asymptote offset)."""
+
+    body: ThermalBody
+    stem_loss_W_K: float
+    emissivity: float
+    air_C: float
+    air_rate_K_s: float
+    walls_C: float
+    lag_s: float
+    name: str = "lumped"
+
+    def curve(self, parameters: Array, length_s: float) -> Curve:
+        """Temperatures over `length_s` from the start of the record for parameter sets of shape (sets, 3).
+
+        A lagging sensor is taken as at the body's own temperature at the start."""
+        h, start_C, offset = np.exp(parameters[:, 0]), parameters[:, 1], parameters[:, 2]
+        time = (chebyshev.nodes() + 1.0)[:, None] * (length_s / 2.0)
+        air = self.air_C + offset + self.air_rate_K_s * time
+        theta0 = np.maximum(start_C - air[0], 1e-3)
+        integrate = chebyshev.integration() * (length_s / 2.0)
+        conductance = h * self.body.area_m2 + self.stem_loss_W_K
+        z = conductance / self.body.capacity_J_K(float(np.mean(start_C))) * time
+        walls = self.walls_C + offset if self.walls_C == self.air_C else self.walls_C
+        for _ in range(ROUNDS):
+            theta = theta0 * np.exp(-np.clip(z, -LARGEST_Z, LARGEST_Z))
+            body = air + theta
+            rate = (conductance * theta + self._radiation_W(body, walls)) / self.body.capacity_J_K_at(body)
+            new = integrate @ ((rate + self.air_rate_K_s) / theta)
+            change = float(np.max(np.abs(new - z)))
+            z = new
+            if change < TOLERANCE:
+                break
+        theta = theta0 * np.exp(-np.clip(z, -LARGEST_Z, LARGEST_Z))
+        body = air + theta
+        rate = -(conductance * theta + self._radiation_W(body, walls)) / self.body.capacity_J_K_at(body)
+        if self.lag_s == 0.0:
+            return Curve(length_s, body, body, rate, np.zeros(len(h)), 0.0)
+        derivative = chebyshev.differentiation() * (2.0 / length_s)
+        steady = np.linalg.solve(np.eye(chebyshev.NODES) + self.lag_s * derivative, body)
+        fading = body[0] - steady[0]
+        return Curve(length_s, steady, body, derivative @ steady, fading, self.lag_s)
+
+    def radiation_W_m2K(self, body_C: float, offset_K: float = 0.0) -> float:
+        """Radiation [W/(m²·K)] at a surface temperature [°C], over its excess above the air."""
+        walls = self.walls_C + offset_K if self.walls_C == self.air_C else self.walls_C
+        watts = self._radiation_W(np.array([body_C]), walls)[0]
+        return float(watts / (self.body.area_m2 * (body_C - self.air_C - offset_K)))
+
+    def _radiation_W(self, body_C: Array, walls_C: Array | float) -> Array:
+        fourth = (body_C + ZERO_C_K) ** 4 - (np.asarray(walls_C) + ZERO_C_K) ** 4
+        result: Array = self.emissivity * STEFAN_BOLTZMANN_W_M2K4 * self.body.area_m2 * fourth
+        return result
+
+
+def lumped_model(setup: Setup, record_s: float) -> LumpedModel:
+    """The lumped model of a bench for a record of `record_s` seconds, over which the air drifts."""
+    air = setup.air
+    end = air.temperature_C if air.temperature_end_C is None else air.temperature_end_C
+    return LumpedModel(
+        body=thermal_body(setup.body),
+        stem_loss_W_K=setup.body.stem_loss_W_K,
+        emissivity=setup.body.emissivity,
+        air_C=air.temperature_C,
+        air_rate_K_s=(end - air.temperature_C) / record_s,
+        walls_C=air.temperature_C if air.surroundings_C is None else air.surroundings_C,
+        lag_s=setup.thermometer.lag_s,
+    )
