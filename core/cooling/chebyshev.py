@@ -18,7 +18,7 @@ NODES = 20
 @cache
 def nodes() -> Array:
     """The nodes on [−1, 1], ascending, shape (NODES,)."""
-    return -np.cos(pi * np.arange(NODES) / (NODES - 1))
+    return np.asarray(-np.cos(pi * np.arange(NODES) / (NODES - 1)), dtype=np.float64)
 
 
 @cache

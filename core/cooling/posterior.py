@@ -81,7 +81,8 @@ def sample_pair(
 
 
 def _root(covariance: Array) -> Array:
-    return np.linalg.cholesky(covariance + np.diag(1e-12 * np.diag(covariance) + 1e-300))
+    firm = covariance + np.diag(1e-12 * np.diag(covariance) + 1e-300)
+    return np.asarray(np.linalg.cholesky(firm), dtype=np.float64)
 
 
 def _weigh(logs: Array) -> Array:

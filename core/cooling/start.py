@@ -43,7 +43,7 @@ def find_start(evidence: Evidence, later: Evidence, guess: Array, prior: Prior) 
     spread = np.diag(one.sd[place] ** 2) + slope @ covariance @ slope.T
     whitened = np.linalg.solve(np.linalg.cholesky(spread), one.miss[place])
     heard = np.cumsum(np.minimum(whitened**2, CLIP**2))
-    count = np.arange(1, len(place) + 1)
+    count = np.arange(1.0, len(place) + 1.0)
     agrees = heard <= _chi_square_limit(count)
     if agrees[-1]:
         return 0
