@@ -70,6 +70,11 @@ def shown(value: object) -> str:
     return text[:40] + "…" if len(text) > 40 else text
 
 
+def shown_path(path: object) -> str:
+    """A path as a sentence may quote it: whole, printable, on one line."""
+    return "".join(c if c.isprintable() else "\N{REPLACEMENT CHARACTER}" for c in str(path))
+
+
 def allowed(description: Description) -> str:
     """What a value may be, in words."""
     unit = f" {description.unit}" if description.unit else ""

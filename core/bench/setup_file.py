@@ -11,7 +11,16 @@ from pathlib import Path
 from typing import Any
 
 from core.bench.setup import SECTIONS, Setup
-from core.bench.setup_check import allowed, descriptions, nearest, problems, required, shown, value_fault
+from core.bench.setup_check import (
+    allowed,
+    descriptions,
+    nearest,
+    problems,
+    required,
+    shown,
+    shown_path,
+    value_fault,
+)
 from core.errors import BadSetup
 
 LARGEST_FILE = 200_000  # bytes; a set-up has some 2 000
@@ -25,7 +34,7 @@ class _Lines:
     """Where each section and key of a TOML text stands, by a plain look at its lines."""
 
     def __init__(self, text: str, name: str) -> None:
-        self.name = shown(name)
+        self.name = shown_path(name)
         self._found: dict[tuple[str, str], int] = {}
         section = ""
         for number, line in enumerate(text.splitlines(), 1):
@@ -49,14 +58,14 @@ def _parsed(text: str, name: str) -> dict[str, Any]:
     try:
         return tomllib.loads(text)
     except RecursionError:
-        raise BadSetup(f"{shown(name)}: this is not a set-up; it nests lists or tables too deeply.") from None
+        raise BadSetup(f"{shown_path(name)}: this is not a set-up; it nests lists or tables too deeply.") from None
     except ValueError as error:  # TOMLDecodeError, or a number of thousands of digits
         found = _PLACE.match(str(error))
         fault = shown(found[1] if found else str(error)).replace("\n", " ")
         place = f" line {found[2]} column {found[3]}" if found and found[2] else ""
         end = " at its end" if found and not found[2] else ""
         raise BadSetup(
-            f"{shown(name)}{place}: this is not TOML{end} ({fault}); compare the example in DEVELOPERS.md."
+            f"{shown_path(name)}{place}: this is not TOML{end} ({fault}); compare the example in DEVELOPERS.md."
         ) from None
 
 
@@ -89,7 +98,7 @@ def setup_from_text(text: str, name: str) -> Setup:
     Raises BadSetup with one sentence for the first thing that is wrong."""
     text = text.removeprefix("\N{ZERO WIDTH NO-BREAK SPACE}")
     if len(text) > LARGEST_FILE:
-        raise BadSetup(f"{shown(name)}: this is not a set-up; it is longer than {LARGEST_FILE} characters.")
+        raise BadSetup(f"{shown_path(name)}: this is not a set-up; it is longer than {LARGEST_FILE} characters.")
     tables = _parsed(text, name)
     lines = _Lines(text, name)
     for section in tables:
@@ -115,12 +124,12 @@ def read_setup(path: Path) -> Setup:
             data = file.read(4 * LARGEST_FILE + 1)
     except (OSError, ValueError) as error:
         reason = error.strerror if isinstance(error, OSError) and error.strerror else str(error)
-        raise BadSetup(f"{shown(str(path))}: the set-up cannot be read ({shown(reason)}).") from None
+        raise BadSetup(f"{shown_path(path)}: the set-up cannot be read ({shown(reason)}).") from None
     try:
         text = data.decode("utf-8")
     except UnicodeDecodeError as error:
         line = data.count(b"\n", 0, error.start) + 1
-        raise BadSetup(f"{shown(str(path))} line {line}: this is not UTF-8; save the file as UTF-8.") from None
+        raise BadSetup(f"{shown_path(path)} line {line}: this is not UTF-8; save the file as UTF-8.") from None
     return setup_from_text(text, str(path))
 
 

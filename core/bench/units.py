@@ -95,6 +95,8 @@ _SPELLINGS = {
 }
 THIN = "\N{NARROW NO-BREAK SPACE}"
 MINUS = "\N{MINUS SIGN}"
+SMALLEST_PLAIN = -3  # 0.001; smaller values are shown with a power of ten
+_RAISED = str.maketrans("-0123456789", "⁻⁰¹²³⁴⁵⁶⁷⁸⁹")
 
 
 def fahrenheit_to_C(temperature_F: float) -> float:
@@ -194,10 +196,17 @@ def _last_place(u: float, digits: int) -> int:
 
 
 def in_digits(value: float | None, digits: int = 3) -> str:
-    """The value with so many significant digits; a dash where there is none."""
+    """The value with so many significant digits, small ones with a power of ten; a dash where there is none."""
     if value is None or not isfinite(value):
         return "—"
-    return grouped(_plain(_rounded(value, _last_place(value, digits) if value else 1 - digits)))
+    if value == 0.0:
+        return "0"
+    place = _last_place(value, digits)
+    rounded = _rounded(value, place)
+    exponent = rounded.adjusted()
+    if exponent >= SMALLEST_PLAIN:
+        return grouped(_plain(rounded))
+    return f"{grouped(_plain(rounded.scaleb(-exponent)))}·10{str(exponent).translate(_RAISED)}"
 
 
 def with_u(value: float | None, u: float | None, unit: str = "") -> str:

@@ -9,7 +9,7 @@ from dataclasses import dataclass
 from pathlib import Path
 from typing import Any
 
-from core.bench.setup_check import shown
+from core.bench.setup_check import shown, shown_path
 from core.bench.setup_file import read_setup
 from core.commands import json_form, text_form
 from core.errors import BenchError, NoAnswer, WrongUsage
@@ -51,7 +51,7 @@ def run(args: Namespace) -> int:
 
 
 def _refuse_wrong_use(path: Path, setup: Path | None) -> None:
-    name = shown(str(path))
+    name = shown_path(path)
     if not path.exists():
         raise WrongUsage(f"{name}: there is no such file or folder.")
     if path.is_dir():
@@ -64,7 +64,7 @@ def _refuse_wrong_use(path: Path, setup: Path | None) -> None:
             f"{name}: there is no {shown(_beside(path).name)} beside it; name a set-up after --setup."
         )
     elif setup is not None and not setup.exists():
-        raise WrongUsage(f"{shown(str(setup))}: there is no such file.")
+        raise WrongUsage(f"{shown_path(setup)}: there is no such file.")
 
 
 def _beside(path: Path) -> Path:
@@ -76,7 +76,7 @@ def _of_file(path: Path, setup: Path | None) -> _Outcome:
     try:
         return _Outcome(about, str(path), answer_to(read_readings(path), read_setup(setup or _beside(path))))
     except NoAnswer as error:
-        return _Outcome(about, str(path), NoAnswer(f"{shown(str(path))}: {error}"))
+        return _Outcome(about, str(path), NoAnswer(f"{shown_path(path)}: {error}"))
     except BenchError as error:
         return _Outcome(about, str(path), error)
 
@@ -92,4 +92,4 @@ def _of_folder(folder: Path) -> Iterator[_Outcome]:
         title = where + (f", {one.name}" if one.name else "") + (" (invented)" if one.invented else "")
         about = {"file": str(folder), "run": one.run, "name": one.name, "kind": one.kind, "invented": one.invented}
         refused = isinstance(answer, BenchError)
-        yield _Outcome(about, title, NoAnswer(f"{shown(where)}: {answer}") if refused else answer)
+        yield _Outcome(about, title, NoAnswer(f"{shown_path(where)}: {answer}") if refused else answer)

@@ -4,7 +4,7 @@ from __future__ import annotations
 
 from argparse import Namespace
 
-from core.bench.setup_check import shown
+from core.bench.setup_check import shown_path
 from core.commands import json_form, text_form
 from core.errors import WrongUsage
 from core.handover.export import is_export, read_session
@@ -14,7 +14,7 @@ from core.handover.recompute import answers_to, law_over
 def run(args: Namespace) -> int:
     """Print the law, and the runs that are not in it with the reason."""
     if not is_export(args.folder):
-        raise WrongUsage(f"{shown(str(args.folder))}: there is no exported session here.")
+        raise WrongUsage(f"{shown_path(args.folder)}: there is no exported session here.")
     session = read_session(args.folder)
     series, left_out = law_over(session, answers_to(session))
     if args.json:

@@ -24,7 +24,9 @@ def columns(rows: Iterable[Sequence[str]], indent: int = 2) -> str:
 
 def percent(share: float | None, digits: int = 2) -> str:
     """A ratio as a percentage."""
-    return "—" if share is None else f"{in_digits(100 * share, digits)} %"
+    if share is None:
+        return "—"
+    return "< 0.01 %" if 0.0 < abs(share) < 1e-4 else f"{in_digits(100 * share, digits)} %"
 
 
 def _expected(expected: Sequence[Expectation]) -> str:

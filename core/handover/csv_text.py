@@ -12,7 +12,7 @@ from dataclasses import dataclass
 from math import isfinite
 from pathlib import Path
 
-from core.bench.setup_check import nearest, shown
+from core.bench.setup_check import nearest, shown, shown_path
 from core.errors import BadReadings
 
 LARGEST_FILE = 64_000_000  # bytes: some two million readings
@@ -33,7 +33,7 @@ class Place:
     def refuse(self, fault: str) -> BadReadings:
         """The refusal of what stands here."""
         column = f", column {shown(self.column)}" if self.column else ""
-        return BadReadings(f"{shown(self.file)} line {self.line}{column}: {fault}.")
+        return BadReadings(f"{shown_path(self.file)} line {self.line}{column}: {fault}.")
 
 
 def read_bytes(path: Path, most: int = LARGEST_FILE) -> bytes:
@@ -43,9 +43,9 @@ def read_bytes(path: Path, most: int = LARGEST_FILE) -> bytes:
             data = file.read(most + 1)
     except (OSError, ValueError) as error:
         reason = error.strerror if isinstance(error, OSError) and error.strerror else str(error)
-        raise BadReadings(f"{shown(str(path))}: the file cannot be read ({shown(reason)}).") from None
+        raise BadReadings(f"{shown_path(path)}: the file cannot be read ({shown(reason)}).") from None
     if len(data) > most:
-        raise BadReadings(f"{shown(str(path))}: the file is larger than {most / 1e6:g} MB; it is no such table.")
+        raise BadReadings(f"{shown_path(path)}: the file is larger than {most / 1e6:g} MB; it is no such table.")
     return data
 
 

@@ -13,7 +13,7 @@ import tempfile
 from collections.abc import Mapping
 from pathlib import Path
 
-from core.bench.setup_check import shown
+from core.bench.setup_check import shown, shown_path
 from core.errors import BadReadings, HandoverFault
 from core.handover.csv_text import read_bytes
 from core.handover.session import ExportSession
@@ -60,7 +60,7 @@ def write_folder(folder: Path, files: Mapping[str, bytes]) -> None:
 
 def _unfinished(folder: Path, error: OSError) -> HandoverFault:
     reason = shown(error.strerror or str(error))
-    return HandoverFault(f"{shown(str(folder))} was not written ({reason}); what was there before still stands.")
+    return HandoverFault(f"{shown_path(folder)} was not written ({reason}); what was there before still stands.")
 
 
 def read_session(folder: Path) -> ExportSession:
@@ -103,12 +103,12 @@ def _refuse_foreign(folder: Path) -> None:
     if not folder.exists():
         return
     if not folder.is_dir():
-        raise HandoverFault(f"{shown(str(folder))} is a file, not a folder; choose another name.")
+        raise HandoverFault(f"{shown_path(folder)} is a file, not a folder; choose another name.")
     present = sorted(one.name for one in folder.iterdir())
     foreign = [name for name in present if name not in FILES]
     if foreign:
         raise HandoverFault(
-            f"{shown(str(folder))} holds '{shown(foreign[0])}', which no export wrote; choose another folder."
+            f"{shown_path(folder)} holds '{shown(foreign[0])}', which no export wrote; choose another folder."
         )
     if present:
         try:
@@ -116,7 +116,7 @@ def _refuse_foreign(folder: Path) -> None:
         except BadReadings as error:
             raise HandoverFault(f"{str(error).removesuffix('.')}, or export to another folder.") from None
         if SUMS not in present:
-            raise HandoverFault(f"{shown(str(folder))} lacks its {SUMS}; choose another folder.")
+            raise HandoverFault(f"{shown_path(folder)} lacks its {SUMS}; choose another folder.")
 
 
 def _write(path: Path, data: bytes) -> None:

@@ -101,13 +101,8 @@ def series_figure(series: Series, answers: Sequence[Answer]) -> bytes:
     scaled = np.array([one.nusselt / one.prandtl ** (1 / 3) for one in series.runs])
     scaled_u = np.array([one.nusselt_u / one.prandtl ** (1 / 3) for one in series.runs])
     grid = np.geomspace(0.85 * Re.min(), 1.18 * Re.max(), 60)
-    axes.plot(
-        grid,
-        series.C * grid**series.m,
-        color=BLUE,
-        lw=1.4,
-        label=f"Nu = {series.C:.3g}·Re^{series.m:.3f}·Pr^(1/3)",
-    )
+    law = rf"$\mathrm{{Nu}} = {series.C:.3g}\;\mathrm{{Re}}^{{{series.m:.3f}}}\;\mathrm{{Pr}}^{{1/3}}$"
+    axes.plot(grid, series.C * grid**series.m, color=BLUE, lw=1.4, label=law)
     axes.errorbar(
         Re,
         scaled,
@@ -137,8 +132,8 @@ def series_figure(series: Series, answers: Sequence[Answer]) -> bytes:
     for axis in (axes.xaxis, axes.yaxis):
         axis.set_major_formatter("{x:g}")
         axis.set_minor_formatter("{x:g}")
-    axes.tick_params(axis="both", which="minor", labelsize=7)
+    axes.tick_params(axis="both", which="both", labelsize=8)
     axes.set_xlabel("Reynolds number")
-    axes.set_ylabel("Nu·Pr^(−1/3)")
+    axes.set_ylabel(r"$\mathrm{Nu}\;\mathrm{Pr}^{-1/3}$")
     axes.legend(loc="upper left")
     return _png(figure)

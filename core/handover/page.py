@@ -23,7 +23,7 @@ td { border-bottom: 1px solid var(--line); }
 td.from { color: var(--soft); font: .74rem/1.7 ui-monospace, "DejaVu Sans Mono", monospace; white-space: nowrap; }
 figure { margin: 1rem 0; } figure img { width: 100%; height: auto; display: block; }
 figcaption { color: var(--soft); font-size: .82rem; }
-.number { font-size: 1.5rem; font-weight: 600; white-space: nowrap; }
+.number { font-size: 1.5rem; font-weight: 600; } .number sup { font-size: .62em; }
 .mark { display: inline-block; min-width: 4.2em; padding: 0 .5em; border: 1.5px solid; border-radius: 1em;
   text-align: center; font-size: .8rem; font-weight: 600; }
 .keep, .good { color: #00664b; } .look { color: #8a5200; } .again { color: #a3200d; border-width: 2.5px; }

@@ -13,7 +13,7 @@ from pathlib import Path
 import numpy as np
 
 from core import __version__
-from core.bench.setup_check import shown
+from core.bench.setup_check import shown, shown_path
 from core.bench.units import in_digits, with_u
 from core.errors import BenchError, HandoverFault, NoAnswer
 from core.handover.columns import READING_COLUMNS, RESULTS, RUN_COLUMNS, cell
@@ -43,7 +43,7 @@ def write_report(folder: Path) -> Path:
         foreign = [one.name for one in target.iterdir() if one.name != PAGE and one.suffix != ".png"]
         if foreign:
             raise HandoverFault(
-                f"{shown(str(target))} holds '{shown(foreign[0])}', which no report wrote; move it away."
+                f"{shown_path(target)} holds '{shown(foreign[0])}', which no report wrote; move it away."
             )
     write_folder(target, files)
     return target / PAGE
@@ -55,7 +55,7 @@ def report_files(folder: Path) -> dict[str, bytes]:
     answers = answers_to(session)
     stored = _stored(folder)
     figures: dict[str, bytes] = {}
-    parts = [_summary(session, answers, stored), _law(session, answers, figures)]
+    parts = [_summary(session, answers, stored), _law(session, answers, stored, figures)]
     for number, (run, answer) in enumerate(zip(session.runs, answers, strict=True), 1):
         parts.append(run_part(number, run, answer, stored[run.run], figures))
     parts += [_differences(session, answers, stored), _method(folder)]
@@ -112,7 +112,12 @@ def _summary(session: ExportSession, answers: Sequence[Answer | BenchError], sto
     return '<h2 class="flow">All runs</h2>\n' + table(head, rows)
 
 
-def _law(session: ExportSession, answers: Sequence[Answer | BenchError], figures: dict[str, bytes]) -> str:
+def _law(
+    session: ExportSession,
+    answers: Sequence[Answer | BenchError],
+    stored: dict[str, Stored],
+    figures: dict[str, bytes],
+) -> str:
     try:
         series, left_out = law_over(session, answers)
     except NoAnswer as error:
@@ -128,16 +133,16 @@ def _law(session: ExportSession, answers: Sequence[Answer | BenchError], figures
     joint = in_digits(series.correlation_ln_C_m, 4)
     return (
         '<h2 class="flow">The law over the speeds</h2>\n'
-        f'<p class="number">Nu = {C} · Re<sup>{m}</sup> · Pr<sup>1/3</sup></p>\n'
+        f'<p class="number">Nu = ({C}) · Re<sup>{m}</sup> · Pr<sup>1/3</sup></p>\n'
         f'<p class="soft">± standard uncertainty; the correlation of ln C and m is {joint}. '
         f"{text(series.next_reason)}</p>\n"
         + figure(figures["law.png"], "Nusselt number over Reynolds number with the fitted law", caption)
-        + _law_table(series)
+        + _law_table(series, stored)
         + "".join(f"<p>Not in the law: {text(run)}. {text(reason)}</p>\n" for run, reason in left_out)
     )
 
 
-def _law_table(series: Series) -> str:
+def _law_table(series: Series, stored: dict[str, Stored]) -> str:
     rows = [
         [
             text(one.run),
@@ -145,7 +150,7 @@ def _law_table(series: Series) -> str:
             with_u(one.reynolds, one.reynolds_u),
             with_u(one.nusselt, one.nusselt_u),
             f"{100 * one.residual:+.2f} %".replace("-", "−"),
-            f"{RUNS}, readings of the run",
+            stored[one.run].at("reynolds, nusselt"),
         ]
         for one in series.runs
     ]

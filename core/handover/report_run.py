@@ -37,7 +37,9 @@ def title_of(run: ExportRun) -> str:
 
 def percent(share: float | None) -> str:
     """A ratio as a percentage."""
-    return "—" if share is None else f"{in_digits(100 * share, 2)} %"
+    if share is None:
+        return "—"
+    return "< 0.01 %" if 0.0 < abs(share) < 1e-4 else f"{in_digits(100 * share, 2)} %"
 
 
 def run_part(

@@ -12,7 +12,7 @@ from typing import Any
 
 from core.bench.readings import Readings, Ruling
 from core.bench.setup import SECTIONS, Setup
-from core.bench.setup_check import problems, required, shown
+from core.bench.setup_check import problems, required, shown, shown_path
 from core.errors import BadReadings, HandoverFault
 from core.handover.columns import ABOUT, READING_COLUMNS, RUN_COLUMNS, Column, reading_rows, run_row, setup_columns
 from core.handover.csv_text import Place, as_written, decoded, named_table, parsed_number, to_text
@@ -155,7 +155,9 @@ def session_from_files(files: Mapping[str, bytes], folder: str) -> ExportSession
     names = {name: f"{folder}/{name}" for name in FILES}
     for name in (RUNS, READINGS):
         if name not in files:
-            raise BadReadings(f"{shown(names[name])}: the file is missing; copy the whole exported folder again.")
+            raise BadReadings(
+                f"{shown_path(names[name])}: the file is missing; copy the whole exported folder again."
+            )
     check_sums(files, folder)
     by_run: dict[str, list[Row]] = {}
     for line, row in _rows(files[READINGS], names[READINGS], READING_COLUMNS):
@@ -195,9 +197,9 @@ def check_sums(files: Mapping[str, bytes], folder: str) -> None:
         if summed not in FILES:
             raise Place(name, line).refuse(f"'{shown(entry)}' is no sum of a file of an export")
         if summed not in files:
-            raise BadReadings(f"{shown(folder)}/{summed}: the file is missing; copy the whole folder again.")
+            raise BadReadings(f"{shown_path(folder)}/{summed}: the file is missing; copy the whole folder again.")
         if sha256(files[summed]).hexdigest() != digest:
             raise BadReadings(
-                f"{shown(folder)}/{summed}: the file is not as it was exported; copy it again, or delete {SUMS} "
-                "to use it as it stands."
+                f"{shown_path(folder)}/{summed}: the file is not as it was exported; copy it again, or "
+                f"delete {SUMS} to use it as it stands."
             )

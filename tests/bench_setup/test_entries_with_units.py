@@ -136,5 +136,10 @@ def test_digits_are_grouped_in_threes():
     """Threes on both sides of the point, four digits together, a true minus."""
     assert grouped("-1234567.12345") == "−1 234 567.123 45".replace(" ", "\N{NARROW NO-BREAK SPACE}")
     assert grouped("1234.1234") == "1234.1234"
-    assert in_digits(0.0) == "0.00"
-    assert in_digits(None) == "—"
+    assert [in_digits(value) for value in (0.0, None, 57.0, 0.00123, 1.834e-7)] == [
+        "0",
+        "—",
+        "57.0",
+        "0.001 23".replace(" ", "\N{NARROW NO-BREAK SPACE}"),
+        "1.83·10⁻⁷",
+    ]
