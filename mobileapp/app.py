@@ -65,7 +65,7 @@ class CooltallyApp(App):
             self.navigator.go(trail[-1][0], **trail[-1][1])
         else:
             self.navigator.go("home")
-            if self.model.pad is not None:
+            if self.model.recorder.pad is not None:
                 self.navigator.go("record")
 
     def _prefer(self, _model: Model, liked: preferences.Preferences) -> None:

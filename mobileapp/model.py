@@ -1,4 +1,4 @@
-"""The state behind the screens: the journal, the session at hand, the run that goes on, and the answers.
+"""The state behind the screens: the journal, the session at hand, its runs and their answers.
 
 Screens read frozen views and call methods; everything slow is done by the worker and delivered by the loop."""
 
@@ -6,8 +6,6 @@ from __future__ import annotations
 
 from collections.abc import Callable
 from dataclasses import replace
-from datetime import datetime
-from functools import partial
 from typing import Any
 
 from kivy.clock import Clock
@@ -22,44 +20,32 @@ from core.recording.events import (
     Decided,
     MeasuredAfter,
     Ruled,
-    RunEnded,
-    RunOpened,
     SessionOpened,
     StartMoved,
 )
 from core.recording.opening import open_journal
-from core.recording.tally import Tally
 from mobileapp import preferences as kept_preferences
 from mobileapp import rehearsing
-from mobileapp.beat import BeatPlayer
 from mobileapp.cautions import touch_safe_in_s
-from mobileapp.device.ports import Device, Stamp
+from mobileapp.device.ports import Device
 from mobileapp.figures import number
 from mobileapp.preferences import Preferences
+from mobileapp.recorder import FORGOTTEN_S, Recorder
 from mobileapp.records import Record, Records
-from mobileapp.running import Running
-from mobileapp.views import BeatView, Felt, LiveFit, PadView, RunView, SessionView, TruthView
+from mobileapp.views import RunView, SessionView, TruthView
 from mobileapp.words import _
 from mobileapp.worker import LatestWorker
-
-FIRST_FIT = 6  # readings before a fit is tried while the run goes on
-USUAL_START_C = 85.0
-FORGOTTEN_S = 3600.0
-CLOCK_BREAK_S = 120.0
 
 Then = Callable[[Any], None]
 Failed = Callable[[str], None]
 
 
 class Model(EventDispatcher):
-    """One journal, one session at hand, at most one run going on."""
+    """One journal and one session at hand; `recorder` has the run that goes on."""
 
     preferences = ObjectProperty(Preferences())
     session: SessionView | None = ObjectProperty(None, allownone=True)
     sessions: tuple[SessionView, ...] = ObjectProperty(())
-    pad: PadView | None = ObjectProperty(None, allownone=True)
-    live = ObjectProperty(LiveFit(None, "", 0))
-    beat: BeatView | None = ObjectProperty(None, allownone=True)
     next_speed = StringProperty("")
     notice = StringProperty("")
 
@@ -68,18 +54,17 @@ class Model(EventDispatcher):
         self.device = device
         self.preferences = liked
         self.ticked: set[str] = set()
-        self.simulated_display: Callable[[], str] | None = None
         self._opened = open_journal(device.data, wall_time=device.clock.wall_iso())
         self._records = Records(self._opened.journal)
         self._worker = LatestWorker(lambda call: Clock.schedule_once(lambda _dt: call(), 0))
+        self.recorder = Recorder(device, self._records, self._worker, liked)
         self._answers: dict[int, Any] = {}
-        self._running: Running | None = None
-        self._warm: Any = None
-        self._beats = BeatPlayer(device.clock, device.sounds, device.haptics, Clock.schedule_once, self._beaten)
         self.notice = " ".join(self._opened.notes)
         opened = self._records.sessions()
         if opened:
-            self._resume(opened[-1].session)
+            self.open_session(str(opened[-1].session))
+            self.notice = " ".join(filter(None, (self.notice, self.recorder.resume_open(opened[-1].session))))
+            self._refresh()
 
     # ------------------------------------------------------------------ preferences
 
@@ -87,8 +72,7 @@ class Model(EventDispatcher):
         """Change and keep what this person likes."""
         liked = replace(self.preferences, **changes)
         kept_preferences.write(self.device.data, liked)
-        if self._running is not None:
-            self._running.preferences = liked
+        self.recorder.prefer(liked)
         self.preferences = liked
 
     # ------------------------------------------------------------------ sessions
@@ -98,12 +82,12 @@ class Model(EventDispatcher):
         setup = self.session.setup if self.session and not self.session.invented else None
         now = self.device.clock.wall_iso()
         title = title or _("Session of {day}").format(day=now[:16].replace("T", " "))
-        kept = self._opened.journal.open_session(SessionOpened(title, now, invented))
+        session = self._records.open_session(SessionOpened(title, now, invented))
         if setup is not None:
-            self._records.keep(kept.session, None, BenchDescribed(setup_to_text(setup)))
+            self._records.keep(session, None, BenchDescribed(setup_to_text(setup)))
         self.ticked = set()
-        self.open_session(str(kept.session))
-        return kept.session
+        self.open_session(str(session))
+        return session
 
     def open_session(self, session: str) -> None:
         """Bring a session to hand and have its answers worked out."""
@@ -294,165 +278,22 @@ class Model(EventDispatcher):
 
     # ------------------------------------------------------------------ the run that goes on
 
-    def begin_run(self, setup: Setup, seed: int | None = None, truth: str = "") -> None:
-        """Open a run in the journal and take it to the pad."""
-        kind = "rehearsal" if truth else "still-air" if setup.recording.kind == "still-air" else "measured"
-        stamps, clock = self.device.stamps, self.device.clock
-        opened = RunOpened(
-            kind, setup_to_text(setup), clock.wall_iso(), stamps.name, stamps.halfwidth_s, clock.slept_s(), seed, truth
-        )  # fmt: skip
-        kept = self._opened.journal.open_run(self._session_number(), opened)
-        self._take_up(kept.number)
+    def begin_run(self, setup: Setup) -> None:
+        """Open a measured run and take it to the pad."""
+        self.recorder.begin(self._session_number(), setup)
         self._refresh()
 
     def begin_rehearsal(self, own_bench: bool, mode: str) -> None:
+        session = self._session_number()
         bench = self.session.setup if own_bench and self.session else None
-        plan = rehearsing.plan(bench, mode, self.device.clock.now_s())
-        self.begin_run(plan.setup, plan.seed, plan.truth)
-
-    def _take_up(self, run: int) -> None:
-        record = self._records.run(run)
-        setup = record.setup
-        tally = Tally(setup.thermometer.resolution_K, partial(self._records.keep, record.session, run), record.events)
-        display = rehearsing.display_of(record.state.opened, setup)
-        self.simulated_display = None if display is None else lambda: display.text(self.device.clock.now_s())
-        start_C = self._usual_start_C(record) if display is None else display.first_to_tap_C
-        self._warm = None
-        self.live = LiveFit(None, "", 0)
-        self._beats.sound_on, self._beats.vibration_on = self.preferences.click, self.preferences.vibration
-        self._running = Running(
-            str(run), record.kind, setup, tally, self.device, self._beats, start_C, self._run_changed
-        )
-        self._running.preferences = self.preferences
-        self._run_changed()
-
-    def _usual_start_C(self, record: Record) -> float:
-        """Where the last run of the session began."""
-        before = [r for r in self._records.runs(record.session) if r.run < record.run and r.state.rows]
-        same = [r for r in before if r.kind == record.kind]
-        step = record.setup.thermometer.resolution_K
-        start = same[-1].state.rows[0].reading_C if same else USUAL_START_C
-        return round(round(start / step) * step, 9)
-
-    def _run_changed(self) -> None:
-        if self._running is None:
-            self.pad = None
-            return
-        self.pad = self._running.pad()
-        self._refit()
-
-    def _refit(self) -> None:
-        running = self._running
-        if running is None:
-            return
-        readings, setup, warm = running.readings, running.setup, self._warm
-        if len(readings) < FIRST_FIT:
-            self.live = LiveFit(None, _("A first h after {count} readings.").format(count=FIRST_FIT), len(readings))
-            return
-
-        def work() -> Any:
-            from core.judgement.judge import judge
-
-            return judge(readings, setup, warm=warm)
-
-        def then(answer: Any) -> None:
-            if self._running is running:
-                self._warm = answer.fit
-                self.live = LiveFit(answer, "", len(readings))
-
-        def failed(sentence: str) -> None:
-            if self._running is running:
-                self.live = LiveFit(None, sentence, len(readings))
-
-        self.ask("live", work, then, failed)
-
-    def _beaten(self, beat: BeatView) -> None:
-        if self._running is not None:
-            self._running.beat(beat)
-            self.beat = beat
-
-    def now_s(self) -> float:
-        return self.device.clock.now_s()
-
-    def stamp_now(self) -> Stamp:
-        return Stamp(self.now_s(), self.device.stamps.halfwidth_s, "loop")
-
-    def start_at(self, reading_C: float) -> None:
-        """The first number that the pad waits for."""
-        if self._running is not None:
-            self._running.start_C = round(reading_C, 9)
-            self._run_changed()
-
-    def contact(self, stamp: Stamp) -> Felt:
-        return self._running.contact(stamp) if self._running else Felt(False)
-
-    def step(self, count: int, stamp: Stamp) -> Felt:
-        return self._running.step(count, stamp) if self._running else Felt(False)
-
-    def typed(self, reading_C: float, stamp: Stamp) -> Felt:
-        return self._running.typed(reading_C, stamp) if self._running else Felt(False)
-
-    def mark(self, name: str, stamp: Stamp) -> Felt:
-        return self._running.mark(name, stamp) if self._running else Felt(False)
-
-    def undo(self, stamp: Stamp) -> Felt:
-        return self._running.undo(stamp) if self._running else Felt(False)
-
-    def digit(self, name: str, stamp: Stamp) -> Felt:
-        return self._running.digit(name, stamp) if self._running else Felt(False)
-
-    def skip_beat(self, stamp: Stamp) -> Felt:
-        return self._running.skip_beat(stamp) if self._running else Felt(False)
-
-    def answer_question(self, reading_C: float, stamp: Stamp) -> Felt:
-        return self._running.answer_question(reading_C, stamp) if self._running else Felt(False)
-
-    def end(self) -> str | None:
-        """The run is over; returns it, or None where it holds no reading and there is nothing to answer."""
-        running, self._running = self._running, None
-        if running is None:
-            return None
-        running.end()
-        self.simulated_display = None
-        self.pad, self.beat = None, None
-        if self.preferences.click:
-            self.device.sounds.play("done")
-        self._refresh()
-        return running.run if len(running.readings) else None
-
-    def _resume(self, session: int) -> None:
-        """Open where the app was left, the running run included; one that cannot go on is closed and told."""
-        self.open_session(str(session))
-        still_open = [record for record in self._records.runs(session) if not record.state.ended]
-        for record in still_open[:-1]:
-            self._close_stale(record)
-        if still_open:
-            if self._clock_went_on(still_open[-1]):
-                self._take_up(still_open[-1].run)
-            else:
-                self._close_stale(still_open[-1])
-                self.notice = _("A run was open when the tablet was restarted. It ended with its last reading.")
+        self.recorder.begin_rehearsal(session, bench, mode)
         self._refresh()
 
-    def _close_stale(self, record: Record) -> None:
-        rows = record.state.rows
-        opened = record.state.opened
-        last_s = rows[-1].stamp_s if rows else 0.0
-        self._records.keep(record.session, record.run, RunEnded(last_s, opened.slept_s if opened else 0.0))
-
-    def _clock_went_on(self, record: Record) -> bool:
-        """Whether stamps of that run and of now are on one clock: no restart of the device lies between."""
-        opened, rows = record.state.opened, record.state.rows
-        if opened is None:
-            return False
-        try:
-            wall_s = (datetime.now().astimezone() - datetime.fromisoformat(opened.wall_time)).total_seconds()
-        except (ValueError, TypeError):
-            return False
-        if not rows:
-            return wall_s < FORGOTTEN_S
-        clock_s = self.now_s() - rows[0].stamp_s
-        return 0.0 <= clock_s <= wall_s + CLOCK_BREAK_S and wall_s < 12 * FORGOTTEN_S
+    def end_run(self) -> str | None:
+        """The run is over; returns it, or None where there is nothing to answer."""
+        run = self.recorder.end()
+        self._refresh()
+        return run
 
     # ------------------------------------------------------------------ rehearsal
 
@@ -490,7 +331,7 @@ class Model(EventDispatcher):
     def resume(self) -> None:
         """A run is never silently continued after the app was away."""
         self.device.stamps.forget()
-        if self._running is not None:
+        if self.recorder.pad is not None:
             self.notice = _("The app was away. The run goes on; readings missed meanwhile are simply missing.")
 
     def close(self) -> None:

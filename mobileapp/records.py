@@ -11,7 +11,7 @@ from core.bench.setup_file import setup_from_text
 from core.convection.flow import velocity_before_m_s
 from core.errors import BenchError
 from core.judgement.answer import Answer
-from core.recording.events import BenchDescribed, Event, Kept, SessionOpened, SessionRenamed
+from core.recording.events import BenchDescribed, Event, Kept, RunOpened, SessionOpened, SessionRenamed
 from core.recording.journal import Journal
 from core.recording.run_state import RunState, derive
 from mobileapp.views import RunView, SessionView
@@ -93,6 +93,14 @@ class Records:
         if run is not None:
             self._runs.pop(run, None)
         return kept
+
+    def open_session(self, event: SessionOpened) -> int:
+        """Begin a session; returns its number."""
+        return self._journal.open_session(event).number
+
+    def open_run(self, session: int, event: RunOpened) -> int:
+        """Begin a run; returns its number."""
+        return self._journal.open_run(session, event).number
 
     def sessions(self) -> tuple[Kept, ...]:
         return self._journal.sessions()

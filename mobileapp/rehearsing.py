@@ -120,13 +120,13 @@ def display_of(opened: RunOpened | None, setup: Setup) -> Display | None:
     model = lumped_model(setup, 1.0)
     tau = model.body.capacity_J_K(truth.start_C) / (truth.h_W_m2K * model.body.area_m2)
     length_s = LENGTH_TAU * tau
-    curve = model.curve(np.array([[log(truth.h_W_m2K), truth.start_C, 0.0]]), 0.0, length_s)
+    curve = model.curve(np.array([[log(truth.h_W_m2K), truth.start_C, 0.0]]), length_s)
     offsets = np.arange(truth.phase_s - LEAD_S - refresh, length_s, refresh)
     inner = curve.at(np.maximum(offsets, 0.0))[:, 0]
     cut = floor if thermometer.rounding == "down" else round
     shown = tuple(round(cut(value / step) * step, 9) for value in inner)
     decimals = max(0, len(f"{step:g}".partition(".")[2]))
-    first = round(shown[0] - (2 if step >= 0.5 else 10) * step, 9)
+    first = round(shown[0] - step, 9)
     return Display(tuple(truth.from_s + offset for offset in offsets), shown, decimals, first)
 
 

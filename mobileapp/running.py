@@ -124,6 +124,13 @@ class Running:
 
     # ------------------------------------------------------------------ beat
 
+    def go_on(self) -> None:
+        """After the app was stopped, the beat falls in again with the readings that there are."""
+        rows = self._tally.state.rows
+        if self.on_beat and rows:
+            self._newest_beat = BeatView(-1, rows[-1].stamp_s, self.setup.recording.beat_s)
+            self._beats.start(self.setup.recording.beat_s, rows[0].stamp_s)
+
     def beat(self, beat: BeatView) -> None:
         """A beat has sounded; one before it that was passed over is noted as such."""
         before = self._newest_beat

@@ -52,18 +52,18 @@ class RecordScreen(Page):
     # ------------------------------------------------------------------ coming and going
 
     def arrive(self, **_aim: Any) -> None:
-        self.model.bind(pad=self._paint, live=self._paint_live, beat=self._paint_beat)
+        self.model.recorder.bind(pad=self._paint, live=self._paint_live, beat=self._paint_beat)
         self.hand = self.model.preferences.hand
         self.ids.pad.flash_wanted = self.model.preferences.flash
         self.asking_number = False
         self._ticker = Clock.schedule_interval(self._tick, STATUS_PERIOD_S)
         self._paint()
         self._paint_live()
-        self.ids.display.source = self.model.simulated_display
+        self.ids.display.source = self.model.recorder.simulated_display
         self.model.watch_screen(True)
 
     def leave(self) -> None:
-        self.model.unbind(pad=self._paint, live=self._paint_live, beat=self._paint_beat)
+        self.model.recorder.unbind(pad=self._paint, live=self._paint_live, beat=self._paint_beat)
         if self._ticker is not None:
             self._ticker.cancel()
         self.ids.display.source = None
@@ -74,12 +74,12 @@ class RecordScreen(Page):
         if self.asking_number:
             self.asking_number = False
             return True
-        return self.model.pad is not None
+        return self.model.recorder.pad is not None
 
     # ------------------------------------------------------------------ what is painted
 
     def _paint(self, *_args: Any) -> None:
-        view: PadView | None = self.model.pad
+        view: PadView | None = self.model.recorder.pad
         self.view = view
         if view is None:
             return
@@ -125,7 +125,7 @@ class RecordScreen(Page):
         pad_widget.marks = [((tick - view.floor_C) / span, f"{number(tick, decimals)} °C") for tick in ticks]
 
     def _paint_live(self, *_args: Any) -> None:
-        live = self.model.live
+        live = self.model.recorder.live
         if live.answer is None:
             self.live_text = say(live.waiting_for)
             return
@@ -138,13 +138,13 @@ class RecordScreen(Page):
         if view is None:
             return
         since = view.elapsed_from_s
-        self.clock_text = clock_time(self.model.now_s() - since) if since is not None else "0:00"
+        self.clock_text = clock_time(self.model.recorder.now_s() - since) if since is not None else "0:00"
 
     # ------------------------------------------------------------------ taps
 
     def touched(self, touch: Any) -> None:
         """A finger on the pad."""
-        self._felt(self.model.contact(self._stamp(touch)))
+        self._felt(self.model.recorder.contact(self._stamp(touch)))
 
     def _stamp(self, touch: Any) -> Stamp:
         return touch.ud.get("stamp") or self.model.device.stamps.touch(touch)
@@ -158,9 +158,9 @@ class RecordScreen(Page):
         elif character.isdigit() and self.beat_mode and not self.waiting:
             self.digit(character, stamp)
         elif character in ("2", "3") and not self.beat_mode and not self.waiting:
-            self._felt(self.model.step(int(character), stamp))
+            self._felt(self.model.recorder.step(int(character), stamp))
         elif key in PAD_KEYS:
-            self._felt(self.model.contact(stamp))
+            self._felt(self.model.recorder.contact(stamp))
         else:
             return False
         return True
@@ -173,21 +173,21 @@ class RecordScreen(Page):
 
     def steps(self, count: int, touch: Any) -> None:
         if getattr(touch, "button", None) in USED_BUTTONS:
-            self._felt(self.model.step(count, self._stamp(touch)))
+            self._felt(self.model.recorder.step(count, self._stamp(touch)))
 
     def undo(self, stamp: Stamp) -> None:
-        self._felt(self.model.undo(stamp))
+        self._felt(self.model.recorder.undo(stamp))
 
     def undo_touch(self, touch: Any) -> None:
         self.undo(self._stamp(touch))
 
     def mark(self, name: str, touch: Any) -> None:
-        self._felt(self.model.mark(name, self._stamp(touch)))
+        self._felt(self.model.recorder.mark(name, self._stamp(touch)))
 
     def raise_start(self, steps: int) -> None:
         """Move the first number up or down by display steps."""
         if self.view is not None and self.view.start_C is not None:
-            self.model.start_at(self.view.start_C + steps * self.view.resolution_K)
+            self.model.recorder.start_at(self.view.start_C + steps * self.view.resolution_K)
 
     def ask_number(self, touch: Any) -> None:
         """The stamp is taken now; the number may take its time."""
@@ -197,10 +197,10 @@ class RecordScreen(Page):
 
     def number_done(self, value: float) -> None:
         if self.waiting:
-            self.model.start_at(value)
+            self.model.recorder.start_at(value)
             self.asking_number = False
             return
-        felt = self.model.typed(value, self._number_stamp)
+        felt = self.model.recorder.typed(value, self._number_stamp)
         if felt.confirmed:
             self.asking_number = False
             self._felt(felt)
@@ -209,7 +209,7 @@ class RecordScreen(Page):
 
     def end(self) -> None:
         """Held long enough: the run is over."""
-        run = self.model.end()
+        run = self.model.end_run()
         if run is None:
             self.manager.trail = []
             self.go("home")
@@ -224,9 +224,9 @@ class RecordScreen(Page):
         if name == ERASE:
             self.undo(stamp)
         elif name == SKIP:
-            self._felt(self.model.skip_beat(stamp))
+            self._felt(self.model.recorder.skip_beat(stamp))
         else:
-            self._felt(self.model.digit(name, stamp))
+            self._felt(self.model.recorder.digit(name, stamp))
 
     def digit_touched(self, name: str, touch: Any) -> None:
         if getattr(touch, "button", None) in USED_BUTTONS:
@@ -234,7 +234,7 @@ class RecordScreen(Page):
 
     def meant(self, reading_C: float, touch: Any) -> None:
         """The person says which of two numbers the last digits were."""
-        self._felt(self.model.answer_question(reading_C, self._stamp(touch)))
+        self._felt(self.model.recorder.answer_question(reading_C, self._stamp(touch)))
 
     def _paint_entry(self, view: PadView) -> None:
         blanks = "▢" * max(0, view.digits - len(view.entered))
@@ -248,7 +248,7 @@ class RecordScreen(Page):
         self.asking_which = bool(view.question_C)
 
     def _paint_beat(self, *_args: Any) -> None:
-        beat = self.model.beat
+        beat = self.model.recorder.beat
         if beat is None:
             self.beat_word = ""
         elif beat.index < 0:
