@@ -5,7 +5,7 @@ Trefethen, Spectral Methods in MATLAB, SIAM 2000, chapters 6 (differentiation) a
 from __future__ import annotations
 
 from functools import cache
-from math import pi
+from math import cos, pi
 
 import numpy as np
 from numpy.typing import NDArray
@@ -18,7 +18,7 @@ NODES = 20
 @cache
 def nodes() -> Array:
     """The nodes on [−1, 1], ascending, shape (NODES,)."""
-    return np.asarray(-np.cos(pi * np.arange(NODES) / (NODES - 1)), dtype=np.float64)
+    return np.array([-cos(pi * k / (NODES - 1)) for k in range(NODES)])
 
 
 @cache

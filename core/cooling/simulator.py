@@ -1,0 +1,220 @@
+"""What a person at a real bench would have recorded: a body that cools, a display that rounds, a hand that taps.
+
+For rehearsals, the demo session and the tests. The physics here is integrated by its own small steps and shares no
+formula with the estimator, so that the one can be held against the other."""
+
+from __future__ import annotations
+
+from collections.abc import Callable
+from dataclasses import dataclass, field
+from math import exp, log
+
+import numpy as np
+from numpy.typing import NDArray
+
+from core.bench.body import thermal_body
+from core.bench.readings import Readings
+from core.bench.setup import Setup
+
+Array = NDArray[np.float64]
+
+STEFAN_BOLTZMANN_W_M2K4 = 5.670374419e-8  # CODATA 2018
+STEPS_PER_TIME_CONSTANT = 250
+STILL_AIR_SHARE = 0.12  # of the forced coefficient, before the fan has run up
+
+
+@dataclass(frozen=True, slots=True)
+class Truth:
+    """A bench as it really is, which may differ from the set-up that a person wrote.
+
+    `h_W_m2K` is the coefficient at the velocity before the run; while the velocity creeps by `creep_rel` over the
+    run, h follows with the power `exponent`. The fan runs up with the time constant `fan_run_up_s` after
+    `fan_late_s`. `thermometer_offset_K` is how much the body's thermometer reads above the air's."""
+
+    setup: Setup
+    h_W_m2K: float
+    start_C: float = 90.0
+    end_C: float = 33.0
+    creep_rel: float = 0.0
+    exponent: float = 0.6
+    fan_run_up_s: float = 0.0
+    fan_late_s: float = 0.0
+    thermometer_offset_K: float = 0.0
+
+
+@dataclass(frozen=True, slots=True)
+class Course:
+    """The temperature of the sensor over time, on an even grid with cubic interpolation between."""
+
+    step_s: float
+    temperature_C: Array
+    rate_K_s: Array
+
+    @property
+    def length_s(self) -> float:
+        """How long the course is known."""
+        return self.step_s * (len(self.temperature_C) - 1)
+
+    def at(self, time_s: Array) -> Array:
+        """Temperature [°C] at times [s]; before 0 it is that at 0."""
+        place = np.clip(time_s / self.step_s, 0.0, len(self.temperature_C) - 1.000001)
+        k = place.astype(np.intp)
+        s = place - k
+        r = 1.0 - s
+        v, d = self.temperature_C, self.rate_K_s * self.step_s
+        result: Array = (
+            v[k] * (1 + 2 * s) * r * r + v[k + 1] * (3 - 2 * s) * s * s + s * r * (d[k] * r - d[k + 1] * s)
+        )
+        return result
+
+
+def cool(truth: Truth) -> Course:
+    """Integrate the body and its sensor from the start to the end temperature, by Runge–Kutta of fourth order."""
+    setup = truth.setup
+    body = thermal_body(setup.body)
+    area, lag = body.area_m2, setup.thermometer.lag_s
+    air0 = setup.air.temperature_C
+    air1 = air0 if setup.air.temperature_end_C is None else setup.air.temperature_end_C
+    capacity = body.capacity_J_K(60.0)
+    tau = capacity / (truth.h_W_m2K * area + setup.body.stem_loss_W_K)
+    length = tau * log(max(truth.start_C - air0, 1.0) / max(truth.end_C - air0, 0.5)) + truth.fan_late_s
+    step = min(tau / STEPS_PER_TIME_CONSTANT, lag / 5.0 if lag > 0.0 else 1e9)
+
+    def coefficient(time_s: float) -> float:
+        creep = (1.0 + truth.creep_rel * min(time_s / length, 1.0)) ** truth.exponent
+        since = time_s - truth.fan_late_s
+        if since < 0.0:
+            share = STILL_AIR_SHARE
+        elif truth.fan_run_up_s > 0.0:
+            share = 1.0 - (1.0 - STILL_AIR_SHARE) * exp(-since / truth.fan_run_up_s)
+        else:
+            share = 1.0
+        return float(truth.h_W_m2K * creep * share)
+
+    def rate(time_s: float, body_C: float, sensor_C: float) -> tuple[float, float]:
+        air = air0 + (air1 - air0) * min(time_s / length, 1.5)
+        walls = air0 if setup.air.surroundings_C is None else setup.air.surroundings_C
+        watts = (coefficient(time_s) * area + setup.body.stem_loss_W_K) * (body_C - air)
+        watts += (
+            setup.body.emissivity
+            * STEFAN_BOLTZMANN_W_M2K4
+            * area
+            * ((body_C + 273.15) ** 4 - (walls + 273.15) ** 4)
+        )
+        own = -watts / body.capacity_J_K(body_C)
+        return own, (body_C - sensor_C) / lag if lag > 0.0 else own
+
+    body_C = sensor_C = truth.start_C
+    time = 0.0
+    shown, rates = [sensor_C], [rate(0.0, body_C, sensor_C)[1]]
+    while sensor_C > truth.end_C - 0.5 and time < 3.0 * length + 30.0:
+        a, p = rate(time, body_C, sensor_C)
+        b, q = rate(time + step / 2, body_C + step / 2 * a, sensor_C + step / 2 * p)
+        c, r = rate(time + step / 2, body_C + step / 2 * b, sensor_C + step / 2 * q)
+        d, s = rate(time + step, body_C + step * c, sensor_C + step * r)
+        body_C += step / 6 * (a + 2 * b + 2 * c + d)
+        sensor_C += step / 6 * (p + 2 * q + 2 * r + s)
+        time += step
+        shown.append(sensor_C)
+        rates.append(rate(time, body_C, sensor_C)[1])
+    return Course(step, np.array(shown) + truth.thermometer_offset_K, np.array(rates))
+
+
+@dataclass(frozen=True, slots=True)
+class Display:
+    """A digital display: renewed every `refresh_s` from `phase_s` on, each time with its own noise."""
+
+    course: Course
+    resolution_K: float
+    refresh_s: float
+    phase_s: float
+    rounding: str
+    noise_K: float = 0.0
+    seed: int = 0
+
+    def shown(self, time_s: float) -> float:
+        """The number on the display at a moment [s from the start of the cooling]."""
+        return float(self.shown_at(np.array([time_s]))[0])
+
+    def shown_at(self, time_s: Array) -> Array:
+        """The numbers on the display at moments [s], same shape."""
+        if self.refresh_s == 0.0:
+            renewal, count = time_s, np.zeros(len(time_s))
+        else:
+            count = np.floor((time_s - self.phase_s) / self.refresh_s)
+            renewal = count * self.refresh_s + self.phase_s
+        value = self.course.at(renewal)
+        if self.noise_K > 0.0:
+            value = value + self.noise_K * np.array(
+                [np.random.default_rng((self.seed, int(k) + 1000)).normal() for k in count]
+            )
+        place = value / self.resolution_K
+        whole = np.floor(place + 0.5) if self.rounding == "nearest" else np.floor(place + 1e-9)
+        return np.round(whole * self.resolution_K, 6)
+
+    def changes(self) -> tuple[Array, Array]:
+        """Every moment [s] at which the number becomes another one, and that number; the first is at 0."""
+        pace = self.refresh_s if self.refresh_s > 0.0 else 0.01
+        first = self.phase_s if self.refresh_s > 0.0 else 0.0
+        times = np.concatenate([[0.0], np.arange(first, self.course.length_s, pace)])
+        times = times[np.concatenate([[True], np.diff(times) > 0.0])]
+        numbers = self.shown_at(times + 1e-9)
+        keep = np.concatenate([[True], np.diff(numbers) != 0.0])
+        return times[keep], numbers[keep]
+
+
+@dataclass(frozen=True, slots=True)
+class Hand:
+    """The person: mean delay and scatter of a tap [s], and faults. `late` maps the count of a tap to how many
+    seconds it comes too late; `slips` maps the count of a typed number to how many steps it is off."""
+
+    lag_s: float = 0.0
+    jitter_s: float = 0.05
+    late: dict[int, float] = field(default_factory=dict)
+    slips: dict[int, int] = field(default_factory=dict)
+
+
+def display_of(truth: Truth, seed: int) -> Display:
+    """The display of a bench with a phase drawn by lot."""
+    meter = truth.setup.thermometer
+    phase = float(np.random.default_rng(seed).uniform(0.0, max(meter.refresh_s, 1e-12)))
+    return Display(cool(truth), meter.resolution_K, meter.refresh_s, phase, meter.rounding, meter.noise_K, seed)
+
+
+def record(display: Display, hand: Hand, truth: Truth, seed: int) -> Readings:
+    """What the person records of a display, in the mode of the bench, down to the end temperature."""
+    by_mode: dict[str, Callable[[Display, Hand, Truth, int], Readings]] = {"change": _tapped, "beat": _on_beats}
+    return by_mode[truth.setup.recording.mode](display, hand, truth, seed)
+
+
+def simulate(truth: Truth, seed: int, hand: Hand | None = None) -> Readings:
+    """A whole run: course, display and hand in one."""
+    if hand is None:
+        recording = truth.setup.recording
+        hand = Hand(recording.tap_lag_s, recording.tap_jitter_s)
+    return record(display_of(truth, seed), hand, truth, seed)
+
+
+def _tapped(display: Display, hand: Hand, truth: Truth, seed: int) -> Readings:
+    rng = np.random.default_rng((seed, 1))
+    times, numbers = display.changes()
+    inside = numbers >= truth.end_C
+    times, numbers = times[inside], numbers[inside]
+    delays = np.maximum(hand.lag_s + hand.jitter_s * rng.normal(size=len(times)), -0.9 * display.refresh_s - 0.05)
+    taps = times + delays
+    for count, late in hand.late.items():
+        taps[count] += late
+    taps[0] = 0.0
+    for k in range(1, len(taps)):
+        taps[k] = max(taps[k], taps[k - 1] + 1e-3)
+    return Readings(tuple(float(t) for t in taps), tuple(float(n) for n in numbers))
+
+
+def _on_beats(display: Display, hand: Hand, truth: Truth, seed: int) -> Readings:
+    beats = np.arange(0.0, display.course.length_s, truth.setup.recording.beat_s)
+    numbers = display.shown_at(beats)
+    inside = numbers >= truth.end_C
+    beats, numbers = beats[inside], numbers[inside]
+    for count, steps in hand.slips.items():
+        numbers[count] += steps * display.resolution_K
+    return Readings(tuple(float(t) for t in beats), tuple(float(n) for n in np.round(numbers, 6)))
