@@ -25,6 +25,7 @@ def fit_of(readings):
     return CoolingFit(
         h_W_m2K=101.3 / 3,
         h_u_W_m2K=0.1,
+        h_u_fixed_air_W_m2K=0.08,
         h_total_W_m2K=103.7 / 3,
         h_radiation_W_m2K=0.31,
         h_stem_W_m2K=0.0,
