@@ -23,7 +23,7 @@ def nodes() -> Array:
 
 @cache
 def _to_coefficients() -> Array:
-    return np.linalg.inv(np.polynomial.chebyshev.chebvander(nodes(), NODES - 1))
+    return np.asarray(np.linalg.inv(np.polynomial.chebyshev.chebvander(nodes(), NODES - 1)), dtype=np.float64)
 
 
 @cache

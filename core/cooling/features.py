@@ -7,17 +7,19 @@ in the parameters, so that one linearisation serves many sets of parameters at o
 from __future__ import annotations
 
 from dataclasses import dataclass
+from functools import cache
 
 import numpy as np
 from numpy.typing import NDArray
 
+from core.cooling import chebyshev
 from core.cooling.lumped import STEPS, Curve, LumpedModel
 from core.cooling.observation import Bins, Blur
 
 Array = NDArray[np.float64]
 
 FINE = 160
-NEWTON_ROUNDS = 3
+NEWTON_ROUNDS = 2
 
 
 @dataclass(frozen=True, slots=True)
@@ -52,8 +54,7 @@ def _derivatives(values: Array) -> Array:
 def beat_features(model: LumpedModel, parameters: Array, bins: Bins, record_s: float, blur: Blur) -> Features:
     """Temperatures at each beat, and one refresh before it where beat and refresh are not commensurate."""
     curve = model.curve(_bundle(parameters), record_s)
-    newest = curve.at(bins.time_s)
-    rate = curve.rate_at(bins.time_s)
+    newest, rate = curve.with_rate(bins.time_s)
     values, slopes = [newest[:, 0]], [_derivatives(newest)]
     if not blur.commensurate:
         oldest = curve.at(bins.time_s - blur.refresh_s)
@@ -68,25 +69,35 @@ def change_features(model: LumpedModel, parameters: Array, bins: Bins, record_s:
     `bins` starts with the reading before the first tap; the features are those of the taps after it."""
     curve = model.curve(_bundle(parameters), record_s)
     edges = np.concatenate([bins.upper_C[1:], bins.lower_C[:-1], bins.lower_C[1:]])
-    time = _crossings(curve, edges)
-    rate = np.minimum(curve.rate_at(time), -1e-9)
-    slope = -_derivatives(curve.at(time)) / rate[:, None]
+    time, shown, rate = _crossings(curve, edges)
+    slope = -_derivatives(shown) / rate[:, None]
     taps = len(bins.time_s) - 1
     return Features(time.reshape(3, taps), slope.reshape(3, taps, -1), rate[:taps], float(parameters[1]), curve)
 
 
-def _crossings(curve: Curve, edges_C: Array) -> Array:
-    """When the first set's sensor temperature passes the edges [s]; beyond the window on a straight line."""
-    grid = curve.length_s * np.linspace(0.0, 1.0, FINE) ** 1.5
-    shown = curve.at(grid)[:, 0]
-    time: Array = np.interp(-edges_C, -shown, grid)
-    below = edges_C < shown[-1]
-    above = edges_C > shown[0]
-    time = np.where(below, grid[-1] + (edges_C - shown[-1]) / curve.rate_K_s[-1, 0], time)
-    time = np.where(above, grid[0] + (edges_C - shown[0]) / min(float(curve.rate_at(grid[:1])[0]), -1e-9), time)
+@cache
+def _fine() -> tuple[Array, Array]:
+    """Shares of the record, denser at its hot end, and the interpolation matrix for them."""
+    share = np.linspace(0.0, 1.0, FINE) ** 1.5
+    return share, chebyshev.interpolation(2.0 * share - 1.0)
+
+
+def _crossings(curve: Curve, edges_C: Array) -> tuple[Array, Array, Array]:
+    """When the first set's sensor temperature passes the edges [s]; beyond the record on a straight line.
+
+    Also the temperatures of all sets and the rate of the first one at those times."""
+    share, basis = _fine()
+    grid = curve.length_s * share
+    shown, rates = curve.on_basis(basis, grid)
+    first = shown[:, 0]
+    time: Array = np.interp(-edges_C, -first, grid)
+    below, above = edges_C < first[-1], edges_C > first[0]
+    time = np.where(below, grid[-1] + (edges_C - first[-1]) / min(float(rates[-1]), -1e-9), time)
+    time = np.where(above, grid[0] + (edges_C - first[0]) / min(float(rates[0]), -1e-9), time)
     inside = ~(below | above)
+    at, rate = curve.with_rate(time)
     for _ in range(NEWTON_ROUNDS):
-        miss = curve.at(time)[:, 0] - edges_C
-        step = miss / np.minimum(curve.rate_at(time), -1e-9)
-        time = np.where(inside, np.clip(time - step, grid[0], grid[-1]), time)
-    return time
+        step = np.where(inside, (at[:, 0] - edges_C) / np.minimum(rate, -1e-9), 0.0)
+        time = time - step
+        at, rate = curve.with_rate(time)
+    return time, at, np.minimum(rate, -1e-9)

@@ -42,24 +42,30 @@ class Curve:
     lag_s: float
 
     def at(self, time_s: Array) -> Array:
-        """Sensor temperature [°C] at times [s], shape (len(time_s), sets); beyond it straight on."""
-        x = 2.0 * time_s / self.length_s - 1.0
-        inside = np.clip(x, -1.0, 1.0)
-        beyond = (x - inside) * self.length_s / 2.0
-        ends = np.where(x[:, None] < 0.0, self.rate_K_s[0], self.rate_K_s[-1])
-        result: Array = chebyshev.interpolation(inside) @ self.sensor_C + beyond[:, None] * ends
-        if self.lag_s > 0.0:
-            result = result + self.fading_K * np.exp(-np.maximum(time_s, 0.0) / self.lag_s)[:, None]
-        return result
+        """Sensor temperature [°C] at times [s], shape (len(time_s), sets); beyond the record straight on."""
+        return self.with_rate(time_s)[0]
 
-    def rate_at(self, time_s: Array) -> Array:
-        """Rate of the sensor temperature [K/s] of the first set at times [s], shape (len(time_s),)."""
-        x = np.clip(2.0 * time_s / self.length_s - 1.0, -1.0, 1.0)
-        result: Array = chebyshev.interpolation(x) @ self.rate_K_s[:, 0]
+    def with_rate(self, time_s: Array) -> tuple[Array, Array]:
+        """The same, and the rate [K/s] of the first set, shape (len(time_s),)."""
+        x = 2.0 * time_s / self.length_s - 1.0
+        inside = np.minimum(np.maximum(x, -1.0), 1.0)
+        return self.on_basis(chebyshev.interpolation(inside), time_s, (x - inside) * self.length_s / 2.0)
+
+    def on_basis(self, basis: Array, time_s: Array, beyond_s: Array | None = None) -> tuple[Array, Array]:
+        """The same where the interpolation matrix for these times is known already."""
+        shown = basis @ self.sensor_C
+        rate = basis @ self.rate_K_s[:, 0]
         if self.lag_s > 0.0:
-            late = np.maximum(time_s, 0.0) / self.lag_s
-            result = result - self.fading_K[0] / self.lag_s * np.exp(-late)
-        return result
+            fading = np.exp(-np.maximum(time_s, 0.0) / self.lag_s)
+            shown = shown + self.fading_K * fading[:, None]
+            rate = rate - self.fading_K[0] / self.lag_s * fading
+        if beyond_s is not None:
+            shown = shown + np.where(
+                beyond_s[:, None] < 0.0,
+                beyond_s[:, None] * self.rate_K_s[0],
+                beyond_s[:, None] * self.rate_K_s[-1],
+            )
+        return shown, rate
 
 
 @dataclass(frozen=True, slots=True)

@@ -19,7 +19,7 @@ from core.cooling.normal import quantile
 Array = NDArray[np.float64]
 
 INFLATION = 1.3
-ROUNDS = 3
+ROUNDS = 2
 
 
 @dataclass(frozen=True, slots=True)

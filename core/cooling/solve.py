@@ -15,9 +15,9 @@ from core.errors import NoAnswer
 Array = NDArray[np.float64]
 
 MOST_ROUNDS = 60
-CONVERGED = 1e-3  # of a standard deviation
+CONVERGED = 0.03  # of a standard deviation
 LARGEST_STEP = np.array([0.4, 10.0, 3.0])
-POINTS = 384
+POINTS = 256
 LEAST_EFFECTIVE = 60.0
 
 
