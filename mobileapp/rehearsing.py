@@ -2,17 +2,15 @@
 
 from __future__ import annotations
 
-import bisect
 import json
 import random
 import statistics
 from dataclasses import dataclass, replace
-from math import exp, floor, log
-
-import numpy as np
+from math import exp, log
 
 from core.bench.setup import Body, Flow, Recording, Setup, Surrounding, Thermometer
-from core.cooling.lumped import lumped_model
+from core.cooling.simulator import Display, cool
+from core.cooling.simulator import Truth as SimulatedBench
 from core.errors import BenchError
 from core.judgement.expect import expect
 from core.recording.events import RunOpened
@@ -22,7 +20,7 @@ from mobileapp.views import TruthView
 LEAD_S = 5.0  # the display stands still at first, so that the person can get ready
 START_C = 86.0
 SPREAD = 0.25  # the true h lies within a quarter of the expected one, drawn evenly in its logarithm
-LENGTH_TAU = 4.0
+END_EXCESS_K = 4.0
 STRAY_S = 1.0  # a tap further than this from the middle of all delays belongs to no change
 SHORT_BENCH = Setup(
     body=Body(shape="cylinder", diameter_m=0.006, length_m=0.1, material="aluminium", emissivity=0.05),
@@ -53,24 +51,23 @@ class Plan:
 
 
 @dataclass(frozen=True, slots=True)
-class Display:
-    """The display as it is renewed: moments [s, monotonic clock] and what it then shows."""
+class RehearsalDisplay:
+    """The simulated display on the device's clock: it stands still until `from_s` and then falls."""
 
-    times_s: tuple[float, ...]
-    shown_C: tuple[float, ...]
+    display: Display
+    from_s: float
     decimals: int
     first_to_tap_C: float
 
     def text(self, now_s: float) -> str:
         """What the display shows at this moment."""
-        at = max(0, bisect.bisect_right(self.times_s, now_s) - 1)
-        return f"{self.shown_C[at]:.{self.decimals}f}"
+        return f"{self.display.shown(now_s - self.from_s):.{self.decimals}f}"
 
     def changes(self) -> dict[float, float]:
         """The moment at which each number first appeared."""
         first: dict[float, float] = {}
-        for time_s, shown in zip(self.times_s, self.shown_C, strict=True):
-            first.setdefault(shown, time_s)
+        for time_s, shown in zip(*self.display.changes(), strict=True):
+            first.setdefault(float(shown), self.from_s + float(time_s))
         return first
 
 
@@ -110,24 +107,26 @@ def truth_of(opened: RunOpened) -> Truth | None:
         return None
 
 
-def display_of(opened: RunOpened | None, setup: Setup) -> Display | None:
+def display_of(opened: RunOpened | None, setup: Setup) -> RehearsalDisplay | None:
     """The display that belongs to a rehearsal; the same again after the app was stopped."""
     truth = truth_of(opened) if opened is not None and opened.run_kind == "rehearsal" else None
-    if truth is None:
+    if opened is None or truth is None:
         return None
     thermometer = setup.thermometer
-    step, refresh = thermometer.resolution_K, max(thermometer.refresh_s, 0.02)
-    model = lumped_model(setup, 1.0)
-    tau = model.body.capacity_J_K(truth.start_C) / (truth.h_W_m2K * model.body.area_m2)
-    length_s = LENGTH_TAU * tau
-    curve = model.curve(np.array([[log(truth.h_W_m2K), truth.start_C, 0.0]]), length_s)
-    offsets = np.arange(truth.phase_s - LEAD_S - refresh, length_s, refresh)
-    inner = curve.at(np.maximum(offsets, 0.0))[:, 0]
-    cut = floor if thermometer.rounding == "down" else round
-    shown = tuple(round(cut(value / step) * step, 9) for value in inner)
+    step = thermometer.resolution_K
+    end_C = setup.air.temperature_C + END_EXCESS_K
+    course = cool(SimulatedBench(setup, truth.h_W_m2K, truth.start_C, end_C))
+    display = Display(
+        course=course,
+        resolution_K=step,
+        refresh_s=thermometer.refresh_s,
+        phase_s=truth.phase_s,
+        rounding=thermometer.rounding,
+        noise_K=thermometer.noise_K,
+        seed=opened.seed or 0,
+    )
     decimals = max(0, len(f"{step:g}".partition(".")[2]))
-    first = round(shown[0] - step, 9)
-    return Display(tuple(truth.from_s + offset for offset in offsets), shown, decimals, first)
+    return RehearsalDisplay(display, truth.from_s, decimals, round(display.shown(0.0) - step, 9))
 
 
 def truth_view(state: RunState, setup: Setup) -> TruthView | None:

@@ -1,0 +1,360 @@
+"""Every screen as a picture, and what is wrong with it: texts that are cut, targets that are too small.
+
+`python tests/screen/gallery.py OUT --size 1280x800 --density 1 --palette day --text 1.0 [--language en] [--only home]`
+draws without any display (SDL's offscreen driver) and prints one JSON object. The data are invented here: a bench of
+a small maker of fruit-drying cabinets, four runs whose taps follow a simulated display with a seeded hand."""
+
+from __future__ import annotations
+
+import argparse
+import json
+import os
+import random
+import sys
+import tempfile
+import time
+from collections.abc import Callable
+from dataclasses import replace
+from pathlib import Path
+
+ROOT = Path(__file__).resolve().parents[2]
+SCREENS = (
+    "home-empty", "home", "bench-empty", "bench", "before", "record-waiting", "record", "record-refused", "record-number",
+    "record-beat", "record-question", "rehearsal", "record-rehearsal", "after", "answer", "answer-look", "answer-rehearsal",
+    "answer-reason", "detail", "series", "handover", "settings", "intake",
+)  # fmt: skip
+SETTLE_FRAMES = 14
+
+
+def _arguments() -> argparse.Namespace:
+    parser = argparse.ArgumentParser()
+    parser.add_argument("out", type=Path)
+    parser.add_argument("--size", default="1280x800")
+    parser.add_argument("--density", default="1")
+    parser.add_argument("--palette", default="day")
+    parser.add_argument("--text", type=float, default=1.0)
+    parser.add_argument("--language", default="en")
+    parser.add_argument("--only", default="")
+    return parser.parse_args()
+
+
+def _prepare(arguments: argparse.Namespace) -> None:
+    os.environ.update(
+        SDL_VIDEODRIVER="offscreen",
+        SDL_AUDIODRIVER="dummy",
+        KIVY_DPI=str(160 * float(arguments.density)),
+        KIVY_METRICS_DENSITY=arguments.density,
+    )
+    sys.path.insert(0, str(ROOT))
+    from mobileapp.__main__ import prepare_environment
+
+    prepare_environment(tuple(int(part) for part in arguments.size.split("x")))
+
+
+class Gallery:
+    """One model on invented data, and the pages over it."""
+
+    def __init__(self, arguments: argparse.Namespace) -> None:
+        from kivy.base import EventLoop
+        from kivy.core.window import Window
+
+        from mobileapp import words
+        from mobileapp.device.clock import SystemClock
+        from mobileapp.device.haptics import NoHaptics
+        from mobileapp.device.ports import Device
+        from mobileapp.device.screen import WindowScreen
+        from mobileapp.device.sound import NoSounds
+        from mobileapp.device.stamps import LoopStamp
+        from mobileapp.model import Model
+        from mobileapp.preferences import Preferences
+        from mobileapp.theme import look, register_fonts
+
+        self.arguments = arguments
+        self.window, self.loop = Window, EventLoop
+        register_fonts()
+        words.use(arguments.language)
+        look.wear(arguments.palette, arguments.text)
+        Window.clearcolor = look.ground
+        self.look = look
+        data = Path(tempfile.mkdtemp(prefix="gallery"))
+        device = Device(SystemClock(), LoopStamp(), NoHaptics(), NoSounds(), WindowScreen(), data)
+        self.model = Model(device, Preferences(arguments.palette, arguments.text, arguments.language))
+        EventLoop.ensure_window()
+        self.navigator = None
+        EventLoop.start()
+
+    def settle(self, frames: int = SETTLE_FRAMES) -> None:
+        for _frame in range(frames):
+            self.loop.idle()
+
+    def show(self, name: str, **aim: object) -> object:
+        from mobileapp.navigation import Navigator
+
+        if self.navigator is not None:
+            self.window.remove_widget(self.navigator)
+        self.navigator = Navigator(self.model)
+        self.window.add_widget(self.navigator)
+        self.navigator.trail = [("home", {})] if name != "home" else []
+        self.navigator.go(name, **aim)
+        self.settle()
+        return self.navigator.get_screen(name)
+
+    # ------------------------------------------------------------------ invented data
+
+    def fill(self) -> None:
+        """A session with a bench and four measured runs, and one rehearsal."""
+        from mobileapp import rehearsing
+
+        bench = replace(
+            rehearsing.SHORT_BENCH,
+            body=replace(rehearsing.SHORT_BENCH.body, diameter_m=0.016, length_m=0.11, material="brass"),
+            thermometer=replace(rehearsing.SHORT_BENCH.thermometer, refresh_s=0.5),
+        )
+        self.model.new_session("Drying cabinet, brass rod")
+        self.model.save_setup(bench)
+        self.runs = []
+        for seed, velocity in enumerate((12.0, 8.5, 6.0, 4.2), start=1):
+            setup = replace(bench, flow=replace(bench.flow, velocity_m_s=velocity))
+            self.runs.append(self._measured(setup, seed))
+        self.rehearsal = self._rehearsed()
+        self.wait_for_answers()
+
+    def _measured(self, setup: object, seed: int) -> str:
+        from core.recording.events import RunEnded, RunOpened, Typed
+        from core.bench.setup_file import setup_to_text
+        from mobileapp import rehearsing
+
+        plan = rehearsing.plan(setup, "change", 1000.0, seed)
+        opened = RunOpened("measured", setup_to_text(plan.setup), f"2026-03-0{seed}T10:0{seed}:00+01:00", "loop", 0.004)
+        display = rehearsing.display_of(replace(opened, run_kind="rehearsal", truth=plan.truth), plan.setup)
+        records = self.model._records
+        run = records.open_run(int(self.model.session.session), opened)
+        hand = random.Random(seed)
+        for reading, moment in display.changes().items():
+            if 84 >= reading >= 33:
+                records.keep(int(self.model.session.session), run, Typed(moment + 0.22 + hand.gauss(0, 0.04), reading))
+        records.keep(int(self.model.session.session), run, RunEnded(2000.0))
+        return str(run)
+
+    def _rehearsed(self) -> str:
+        from core.recording.events import RunEnded, Typed
+        from mobileapp import rehearsing
+
+        self.model.begin_rehearsal(own_bench=False, mode="change")
+        run = int(self.model.recorder.pad.run)
+        record = self.model._records.run(run)
+        display = rehearsing.display_of(record.state.opened, record.setup)
+        hand = random.Random(5)
+        for reading, moment in display.changes().items():
+            if 84 >= reading >= 33:
+                self.model._records.keep(record.session, run, Typed(moment + 0.2 + hand.gauss(0, 0.03), reading))
+        self.model._records.keep(record.session, run, RunEnded(1e9))
+        self.model.recorder._running = None
+        self.model.recorder.pad = None
+        return str(run)
+
+    def wait_for_answers(self) -> None:
+        """Until every run of the session has its answer or its refusal."""
+        told: set[str] = set()
+        self.model.open_session(self.model.session.session)
+        closed = [run.run for run in self.model.session.runs if not run.open]
+        for run in closed:
+            self.model.ask_answer(run, lambda _answer, r=run: told.add(r), lambda _why, r=run: told.add(r))
+        self.until(lambda: len(told) == len(closed), 30.0)
+
+    def until(self, done: Callable[[], bool], longest_s: float) -> None:
+        """Turn the loop until something is so."""
+        end = time.monotonic() + longest_s
+        while not done():
+            if time.monotonic() > end:
+                raise RuntimeError("it took too long")
+            self.loop.idle()
+
+    def tap_down(self, count: int) -> None:
+        """A run on the pad with some taps, a second apart."""
+        from mobileapp.device.ports import Stamp
+
+        now = self.model.recorder.now_s() - count - 1
+        for i in range(count):
+            self.model.recorder.contact(Stamp(now + i + 0.3 * (i / count) ** 2, 0.004, "loop"))
+
+    # ------------------------------------------------------------------ each screen in a telling state
+
+    def stage(self, name: str) -> object:
+        kind, _dash, state = name.partition("-")
+        if kind == "record":
+            return self._stage_record(state)
+        if name == "answer-rehearsal":
+            return self.show("answer", run=self.rehearsal)
+        if kind == "answer":
+            page = self.show("answer", run=self.runs[0])
+            self.until(lambda: page.has_answer, 10.0)
+            if state == "look":
+                page.verdict, page.verdict_text = "look", "Look first"
+                page.reason = "The first seconds do not follow the curve: start tapping later, or let the fan run up first."
+            if state == "reason":
+                page.ask_reason()
+            self.settle()
+            return page
+        if name == "after":
+            return self.show("after", run=self.runs[1])
+        if name == "detail":
+            return self.show("detail", run=self.runs[0])
+        page = self.show(kind)
+        if name == "before":
+            page.ids.cautions.children[0].ticked = True
+            self.until(lambda: bool(page.expectation), 10.0)
+        self.settle(40 if kind in ("series", "handover") else SETTLE_FRAMES)
+        return page
+
+    def _stage_record(self, state: str) -> object:
+        model = self.model
+        if state == "rehearsal":
+            model.begin_rehearsal(own_bench=False, mode="change")
+            return self.show("record")
+        setup = model.session.setup
+        beat = state in ("beat", "question")
+        model.begin_run(replace(setup, recording=replace(setup.recording, mode="beat" if beat else "change")))
+        if beat:
+            self._stage_beat(state == "question")
+        elif state != "waiting":
+            self.tap_down(28)
+        page = self.show("record")
+        if state == "refused":
+            page.ids.pad.refuse("Give the number on the display first; then tap at each change.")
+        if state == "number":
+            page.asking_number = True
+            page.ids.number.entered = "61"
+        self.settle(40 if not state else 6)
+        return page
+
+    def _stage_beat(self, question: bool) -> None:
+        from mobileapp.device.ports import Stamp
+        from mobileapp.views import BeatView
+
+        recorder = self.model.recorder
+        recorder.contact(Stamp(recorder.now_s(), 0.004, "loop"))
+        for i, digit in enumerate(("4", "1", "9", "3" if question else "6")):
+            recorder._beaten(BeatView(i, recorder.now_s() + 3.0 * i, 3.0))
+            recorder.digit(digit, Stamp(recorder.now_s(), 0.004, "loop"))
+
+    def put_away(self) -> None:
+        """Forget a run that is still on the pad."""
+        if self.model.recorder.pad is not None:
+            self.model.recorder.end()
+
+    # ------------------------------------------------------------------ pictures and faults
+
+    def picture(self, path: Path) -> None:
+        made = self.window.screenshot(name=str(path.with_suffix(".png")))
+        Path(made).replace(path)
+
+    def faults(self, page: object) -> list[str]:
+        return [*self._cut_texts(page), *self._small_targets(page)]
+
+    def _shown(self, page: object) -> list[object]:
+        found = []
+
+        def walk(widget: object) -> None:
+            if widget.opacity == 0 or (hasattr(widget, "disabled") and widget.disabled and widget.height < 2):
+                return
+            found.append(widget)
+            for child in widget.children:
+                walk(child)
+
+        walk(page)
+        return found
+
+    def _scrolled(self, widget: object) -> bool:
+        while widget.parent is not None and widget.parent is not widget:
+            if type(widget.parent).__name__ in ("Scroll", "ScrollView"):
+                return True
+            widget = widget.parent
+        return False
+
+    def _off_stage(self, widget: object) -> bool:
+        x, y = widget.to_window(widget.x, widget.y)
+        return x >= self.window.width or x + widget.width <= 0 or y >= self.window.height + 2 or y + widget.height <= 0
+
+    def _cut_texts(self, page: object) -> list[str]:
+        from kivy.core.text import Label as CoreLabel
+        from kivy.uix.label import Label
+
+        faults = []
+        for widget in self._shown(page):
+            if not isinstance(widget, Label) or not widget.text.strip() or widget.width < 2 or widget.height < 2:
+                continue
+            if not self._scrolled(widget) and self._off_stage(widget):
+                continue
+            wide, tall = widget.texture_size
+            if wide > widget.width + 2 or tall > widget.height + 2:
+                faults.append(f"cut: {widget.text[:40]!r} {wide}x{tall} in {widget.width:.0f}x{widget.height:.0f}")
+            if not self._scrolled(widget):
+                x, y = widget.to_window(widget.x, widget.y)
+                if x < -2 or y < -2 or x + wide > self.window.width + 2 or y + tall > self.window.height + 2:
+                    faults.append(f"outside: {widget.text[:40]!r}")
+            if widget.text_size[0]:
+                ruler = CoreLabel(font_name=widget.font_name, font_size=widget.font_size)
+                plain = widget.text.replace("[b]", "").replace("[/b]", "")
+                room = widget.text_size[0] - widget.padding[0] - widget.padding[2]
+                longest = max(plain.split(), key=lambda word: ruler.get_extents(word)[0])
+                if ruler.get_extents(longest)[0] > room + 2 and "[" not in plain:
+                    faults.append(f"split: {longest!r} is wider than {room:.0f}")
+        return faults
+
+    def _small_targets(self, page: object) -> list[str]:
+        """Targets below 12 mm; on the record screen, used in gloves, below 22 mm (15 mm on a phone)."""
+        gloved = page.name == "record"
+        phone = min(self.window.width, self.window.height) < 500 * float(self.arguments.density)
+        least_mm = (15.0 if phone else 22.0) if gloved else 12.0
+        per_mm = 160 * float(self.arguments.density) / 25.4
+        faults = []
+        for widget in self._shown(page):
+            touchable = hasattr(widget, "rim") or type(widget).__name__ in ("Tick", "RunRow", "LineInput", "Pad")
+            if not touchable or widget.disabled or widget.opacity == 0 or self._off_stage(widget):
+                continue
+            if widget.height < 2 or widget.width < 2:
+                continue
+            small = min(widget.width, widget.height) / per_mm
+            limit = 12.0 if self._in_number_panel(widget) else least_mm
+            if small < limit - 0.05:
+                faults.append(f"small: {type(widget).__name__} {getattr(widget, 'text', '')[:20]!r} {small:.1f} mm")
+        return faults
+
+    def _in_number_panel(self, widget: object) -> bool:
+        while widget.parent is not None and widget.parent is not widget:
+            if type(widget).__name__ in ("NumberPanel",):
+                return True
+            widget = widget.parent
+        return False
+
+
+def main() -> int:
+    arguments = _arguments()
+    arguments.out.mkdir(parents=True, exist_ok=True)
+    arguments.out = arguments.out.resolve()
+    os.chdir(ROOT)
+    _prepare(arguments)
+    gallery = Gallery(arguments)
+    wanted = [name for name in SCREENS if not arguments.only or name in arguments.only.split(",")]
+    found: dict[str, list[str]] = {}
+    filled = False
+    for name in wanted:
+        if not name.endswith("-empty") and not filled:
+            gallery.fill()
+            filled = True
+        kind = name.partition("-")[0]
+        if not (ROOT / "mobileapp" / "screens" / f"{kind}.kv").is_file():
+            continue
+        page = gallery.stage(name)
+        gallery.picture(arguments.out / f"{name}.png")
+        found[name] = gallery.faults(page)
+        gallery.put_away()
+    gallery.model.close()
+    print(json.dumps(found))
+    sys.stdout.flush()
+    os._exit(0)
+
+
+if __name__ == "__main__":
+    main()
