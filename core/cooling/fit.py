@@ -37,7 +37,8 @@ class CoolingFit:
     asymptote_C: float
     asymptote_u_K: float
     asymptote_shift_K: float  # fitted minus measured, at mid-run
-    h_per_air_W_m2K2: float  # change of h for 1 K in the measured air temperature
+    h_per_air_W_m2K2: float  # change of h for 1 K in the asymptote
+    h_per_measured_air_W_m2K2: float  # change of h for 1 K in the measured air, which the readings may overrule
     h_per_lag_W_m2Ks: float  # change of h for 1 s in the mean tap delay
     phase_s: float | None
     covariance: tuple[tuple[float, ...], ...]

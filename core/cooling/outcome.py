@@ -40,6 +40,7 @@ def outcome(
     var_h, var_air = covariance[0, 0], covariance[2, 2]
     per_air = covariance[0, 2] / var_air if var_air > 0.0 else _per_air(evidence, solution)
     fixed = max(var_h - (covariance[0, 2] ** 2 / var_air if var_air > 0.0 else 0.0), 0.0)
+    measured = _per_air(evidence, solution) if var_air == 0.0 else covariance[0, 2] * prior.weight
     window = (readings.time_s[start_row], readings.time_s[-1])
     grid = np.linspace(0.0, readings.time_s[-1], CURVE_POINTS)
     curve = features.curve.at(grid)[:, 0]
@@ -79,6 +80,7 @@ def outcome(
         asymptote_u_K=sqrt(var_air),
         asymptote_shift_K=offset,
         h_per_air_W_m2K2=h * per_air,
+        h_per_measured_air_W_m2K2=h * measured,
         h_per_lag_W_m2Ks=h * _per_lag(evidence, solution, prior),
         phase_s=None,
         covariance=tuple(tuple(float(x) for x in row) for row in covariance),

@@ -64,22 +64,6 @@ def adapt(
     return Posterior(mean, covariance, effective, points, weights)
 
 
-def sample_pair(
-    log_density: Callable[[Array], Array], pair: tuple[tuple[Array, Array], tuple[Array, Array]], count: int
-) -> Posterior:
-    """The same with a proposal of two normal parts, for a density with a narrow peak on a broad one."""
-    raw = _normals(count, len(pair[0][0]))
-    roots = [_root(covariance) * INFLATION for _, covariance in pair]
-    points = np.concatenate([mean + raw @ root.T for (mean, _), root in zip(pair, roots, strict=True)])
-    logs = []
-    for (mean, _), root in zip(pair, roots, strict=True):
-        standard = np.linalg.solve(root, (points - mean).T)
-        logs.append(-0.5 * np.sum(standard * standard, axis=0) - np.log(abs(np.linalg.det(root))))
-    weights = _weigh(log_density(points) - np.logaddexp(logs[0], logs[1]))
-    mean, covariance, effective = _moments(points, weights)
-    return Posterior(mean, covariance, effective, points, weights)
-
-
 def _root(covariance: Array) -> Array:
     firm = covariance + np.diag(1e-12 * np.diag(covariance) + 1e-300)
     return np.asarray(np.linalg.cholesky(firm), dtype=np.float64)

@@ -9,7 +9,7 @@ from numpy.typing import NDArray
 
 from core.cooling.asymptote import Prior
 from core.cooling.likelihood import Evidence, as_normal, log_likelihood
-from core.cooling.posterior import adapt, sample_pair
+from core.cooling.posterior import adapt
 from core.errors import NoAnswer
 
 Array = NDArray[np.float64]
@@ -18,7 +18,6 @@ MOST_ROUNDS = 60
 CONVERGED = 0.03  # of a standard deviation
 LARGEST_STEP = np.array([0.4, 10.0, 3.0])
 POINTS = 256
-LEAST_EFFECTIVE = 60.0
 
 
 @dataclass(frozen=True, slots=True)
@@ -42,7 +41,7 @@ def search(evidence: Evidence, guess: Array, prior: Prior, rounds: int = MOST_RO
     """
     free = prior.free
     point = guess.copy()
-    point[2] = point[2] if prior.wide_K > 0.0 else 0.0
+    point[2] = point[2] if prior.sd_K > 0.0 else 0.0
     covariance = np.eye(3)
     for done in range(1, rounds + 1):
         features = evidence.features(point)
@@ -52,9 +51,8 @@ def search(evidence: Evidence, guess: Array, prior: Prior, rounds: int = MOST_RO
         gradient = one.slope.T @ (weight * one.miss)
         hessian[1, 1] += 1.0 / evidence.start_u_K**2
         gradient[1] += (evidence.start_C - point[1]) / evidence.start_u_K**2
-        if prior.wide_K > 0.0:
-            hessian[2, 2] += 1.0 / prior.wide_K**2
-            gradient[2] -= point[2] / prior.wide_K**2
+        hessian[2, 2] += prior.weight
+        gradient[2] -= point[2] * prior.weight
         inner = hessian[np.ix_(free, free)]
         scale = np.sqrt(np.diag(inner))
         if not np.all(np.isfinite(inner)) or np.any(scale == 0.0):
@@ -79,22 +77,17 @@ def solve(evidence: Evidence, guess: Array, prior: Prior) -> Solution:
     features = evidence.features(point)
 
     def widened(shift: Array) -> Array:
-        whole = np.zeros((len(shift), 3))
+        whole: Array = np.zeros((len(shift), 3))
         whole[:, free] = shift
         return whole
 
-    def log_wide(shift: Array) -> Array:
+    def log_density(shift: Array) -> Array:
         whole = widened(shift)
-        return log_likelihood(evidence, features, whole) + prior.log_wide(point[2] + whole[:, 2])
+        offset = point[2] + whole[:, 2]
+        logs: Array = log_likelihood(evidence, features, whole) - 0.5 * prior.weight * offset**2
+        return logs
 
-    def log_mixed(shift: Array) -> Array:
-        whole = widened(shift)
-        return log_likelihood(evidence, features, whole) + prior.log_mixed(point[2] + whole[:, 2])
-
-    posterior = adapt(log_wide, np.zeros(len(free)), covariance, POINTS)
-    if prior.mixed:
-        narrow = prior.narrowed(point[2], posterior.mean, posterior.covariance)
-        posterior = sample_pair(log_mixed, ((posterior.mean, posterior.covariance), narrow), POINTS)
+    posterior = adapt(log_density, np.zeros(len(free)), covariance, POINTS)
     whole = np.zeros((3, 3))
     whole[np.ix_(free, free)] = posterior.covariance
     return Solution(
