@@ -31,7 +31,8 @@ def invented_fit(setup: Setup, h_W_m2K: float = 80.0, **changes) -> CoolingFit:
     total = h_W_m2K + radiation + stem
     n = 58
     fit = CoolingFit(
-        h_W_m2K=h_W_m2K, h_u_W_m2K=0.0007 * h_W_m2K, h_total_W_m2K=total, h_radiation_W_m2K=radiation,
+        h_W_m2K=h_W_m2K, h_u_W_m2K=0.00088 * h_W_m2K, h_u_fixed_air_W_m2K=0.0007 * h_W_m2K,
+        h_total_W_m2K=total, h_radiation_W_m2K=radiation,
         h_stem_W_m2K=stem, time_constant_s=body.capacity_J_K(body_C) / (total * body.area_m2),
         time_constant_u_s=0.1, start_C=90.0, start_u_K=0.02, asymptote_C=air_C, asymptote_u_K=0.018,
         asymptote_shift_K=0.0, h_per_air_W_m2K2=0.03 * h_W_m2K, h_per_lag_W_m2Ks=0.0, phase_s=None,

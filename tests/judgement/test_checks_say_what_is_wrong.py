@@ -85,7 +85,7 @@ CASES = {
     "a start left out by the program": ("start", "look", {"fit": {"window_s": (30.0, 300.0)}}),
     "a third of the record left out": ("start", "again", {"fit": {"window_s": (110.0, 300.0)}}),
     "an asymptote above the air": (
-        "asymptote", "again", {"fit": {"asymptote_shift_K": 0.15, "asymptote_u_K": 0.01}}),
+        "asymptote", "again", {"fit": {"asymptote_shift_K": 0.25, "asymptote_u_K": 0.01}}),
     "residuals in a slow wave": (
         "residual pattern", "again", {"fit": {"residual_score": tuple(2 * np.sin(np.arange(58) / 8))}}),
     "residuals that alternate": (
