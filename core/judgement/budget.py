@@ -1,10 +1,11 @@
 """The uncertainty budget of h, Nu and Re by JCGM 100.
 
 What is counted where, so that nothing counts twice. The display's resolution, its refresh and the hand's jitter
-lie in the likelihood of the readings and have no line of their own; what measured air and readings together leave
-open of the asymptote is the line `air temperature`. The thermometer's own offset and scale act only through
-the temperature at which c(T), radiation and the air's properties are taken, as a common offset and a common scale
-leave the time constant alone. The mean delay of the tap acts by the sensitivity that the fit gives."""
+lie in the likelihood of the readings and have no line of their own. How far the air's thermometer may be off the
+body's is the line `air temperature`, with the sensitivity of the fit to the measured air. The body thermometer's
+own offset and scale act only through the temperature at which c(T), radiation and the air's properties are taken:
+a common offset and a common scale leave the time constant alone. The mean delay of the tap acts by the sensitivity
+that the fit gives."""
 
 from __future__ import annotations
 
@@ -87,7 +88,8 @@ def inputs_of(relation: Relation) -> tuple[Input, ...]:
     h, *_ = relation.outputs({})
     step = 1e-4 * tau
     slope = (relation.outputs({READINGS: tau + step})[0] - h) / step
-    inputs.append(Input(READINGS, tau, float(anchor.readings_u_W_m2K / abs(slope)), "s", anchor.readings_dof, low=0.0))
+    u = float(anchor.readings_u_W_m2K / abs(slope))
+    inputs.append(Input(READINGS, tau, u, "s", anchor.readings_dof, low=0.0))
     return tuple(inputs)
 
 
@@ -130,11 +132,11 @@ def budget_of(fit: CoolingFit, setup: Setup) -> Budget:
     ----------
     JCGM 100:2008, clauses 5 and 6, F.1.2.4, G.4.
     """
-    return budget_from(setup, anchor_of(fit))
+    return budget_from(setup, anchor_of(fit, setup))
 
 
 def monte_carlo_of(fit: CoolingFit, setup: Setup, *, seed: int, draws: int = 20_000) -> tuple[Distribution, ...]:
     """The same inputs drawn through the same relation (JCGM 101): h, and in forced flow Nu and Re."""
-    relation = relate(setup, anchor_of(fit))
+    relation = relate(setup, anchor_of(fit, setup))
     inputs = inputs_of(relation)
     return simulate(model_of(relation, inputs), inputs, seed=seed, draws=draws)

@@ -4,7 +4,7 @@ Each function looks at one thing; the table at the end gives its name, unit and 
 
 from __future__ import annotations
 
-from math import hypot, log
+from math import log, sqrt
 
 from core.judgement.evidence import COMMON_PRACTICE, Evidence, Finding, Rule, beyond, unknown
 from core.judgement.patterns import (
@@ -133,21 +133,26 @@ def pattern(evidence: Evidence) -> Finding:
 
 
 def asymptote(evidence: Evidence) -> Finding:
-    """The temperature that the readings head for, against the measured air.
+    """The temperature that the readings alone head for, against the measured air.
 
-    Where both contradict each other the fit lets the readings find their own asymptote; the difference then has
-    the variance of both."""
-    fit = evidence.fit
-    shift, limit = fit.asymptote_shift_K, ASYMPTOTE_SIGMAS * hypot(fit.asymptote_u_K, evidence.air_u_K)
-    outcome = beyond(abs(shift), limit)
+    The fit joins both: with prior variance s² and posterior variance v the readings alone stand s²/(s² − v) times
+    as far from the measured air as the fit does, and that distance has the standard deviation s²/√(s² − v)
+    (product of two normal densities)."""
+    fit, prior_u = evidence.fit, evidence.setup.air.temperature_u_K
+    drawn = prior_u**2 - fit.asymptote_u_K**2
+    if drawn <= (0.02 * prior_u) ** 2:
+        return unknown("The readings say nothing of the air temperature.")
+    pull = prior_u**2 / drawn
+    free, limit = fit.asymptote_shift_K * pull, ASYMPTOTE_SIGMAS * sqrt(drawn) * pull
+    outcome = beyond(abs(free), limit)
     if outcome == "good":
-        return Finding("good", shift, limit, "The readings head for the measured air temperature.")
-    side = "above" if shift > 0.0 else "below"
+        return Finding("good", free, limit, "The readings head for the measured air temperature.")
+    side = "above" if free > 0.0 else "below"
     advice = (
-        f"The readings head for {abs(shift):.2f} K {side} the measured air: check the air temperature, the "
+        f"The readings head for {abs(free):.2f} K {side} the measured air: check the air temperature, the "
         "display's rounding, the emissivity of the surface, and whether the airspeed held."
     )
-    return Finding(outcome, shift, limit, advice)
+    return Finding(outcome, free, limit, advice)
 
 
 MODE = Rule(

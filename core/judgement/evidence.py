@@ -32,7 +32,6 @@ class Evidence:
     setup: Setup
     fit: CoolingFit
     h_U95_rel: float
-    air_u_K: float
     radiation_share: float
     stem_share: float
     velocity_before_m_s: float | None

@@ -129,7 +129,7 @@ def _U95_rel(
         readings_u_W_m2K=total * promised.rate_u_rel,
         per_air_W_m2K2=total * promised.rate_per_air_rel_K,
         per_lag_W_m2Ks=0.0,
-        air_u_K=promised.air_u_K,
+        air_u_K=setup.air.temperature_u_K,
         time_constant_s=time_constant_s,
         body_mean_C=body_C,
         conduction=conduction,

@@ -76,7 +76,6 @@ def judge(
             setup=setup,
             fit=fit,
             h_U95_rel=budget.h.U / abs(fit.h_W_m2K),
-            air_u_K=setup.air.temperature_u_K,
             radiation_share=fit.h_radiation_W_m2K / whole,
             stem_share=fit.h_stem_W_m2K / whole,
             velocity_before_m_s=velocity_before_m_s(setup) if forced else None,

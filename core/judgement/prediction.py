@@ -30,12 +30,11 @@ class Planned:
 
 @dataclass(frozen=True, slots=True)
 class Promise:
-    """Relative standard uncertainty of the decay rate at a known air temperature, its relative change for 1 K in
-    the air temperature, the standard uncertainty left to that, and the number of readings."""
+    """Relative standard uncertainty of the decay rate from readings alone, its relative change for 1 K in the
+    measured air temperature, and the number of readings."""
 
     rate_u_rel: float
     rate_per_air_rel_K: float
-    air_u_K: float
     readings: int
 
 
@@ -126,10 +125,10 @@ def promise(
         gradient = np.array([-planned.rate_s * time * excess, excess, 1.0]) / slope
         information += location_information(width, blur) * np.outer(gradient, gradient)
         time, count = time + gap, count + 1
-    information[2, 2] += max(air_u_K, 1e-4) ** -2
+    prior = max(air_u_K, 1e-4) ** -2
+    information[2, 2] += prior
     if count < 3:
-        return Promise(float("inf"), 0.0, air_u_K, count)
+        return Promise(float("inf"), 0.0, count)
     spread = np.linalg.inv(information)
-    per_air = float(spread[0, 2] / spread[2, 2])
-    fixed = max(float(spread[0, 0] - spread[0, 2] ** 2 / spread[2, 2]), 0.0)
-    return Promise(sqrt(fixed), per_air, sqrt(float(spread[2, 2])), count)
+    per_air = float(spread[0, 2]) * prior
+    return Promise(sqrt(max(float(spread[0, 0]) - (per_air * air_u_K) ** 2, 0.0)), per_air, count)

@@ -43,7 +43,7 @@ BODY_KEYS = {
 @dataclass(frozen=True, slots=True)
 class Anchor:
     """What the relation needs of a fit, made or predicted: h and its standard uncertainty from readings alone, its
-    change with the air temperature and with the tap's delay, the standard uncertainty of the air temperature, the
+    change with the measured air and with the tap's delay, the standard uncertainty of the air temperature, the
     time constant, the body's mean temperature, whether conduction inside is in the model, and the degrees of
     freedom of the readings."""
 
@@ -58,18 +58,19 @@ class Anchor:
     readings_dof: float
 
 
-def anchor_of(fit: CoolingFit) -> Anchor:
+def anchor_of(fit: CoolingFit, setup: Setup) -> Anchor:
     """The anchor of a fit.
 
-    The fit holds the asymptote as a parameter with the measured air as prior, so its variance splits into what
-    stays at a known asymptote and (dh/dT_air)² times the variance left to the asymptote: the lines `readings and
-    their fit` and `air temperature`, each counted once."""
+    The fit takes the measured air as prior of its asymptote, so its variance holds that of the measured air,
+    (dh/dT_air · u)²; this part is taken out and stands as the line `air temperature`, counted once."""
+    air_u_K = setup.air.temperature_u_K
+    from_air = fit.h_per_measured_air_W_m2K2 * air_u_K
     return Anchor(
         h_W_m2K=fit.h_W_m2K,
-        readings_u_W_m2K=fit.h_u_fixed_air_W_m2K,
-        per_air_W_m2K2=fit.h_per_air_W_m2K2,
+        readings_u_W_m2K=max(fit.h_u_W_m2K**2 - from_air**2, 0.0) ** 0.5,
+        per_air_W_m2K2=fit.h_per_measured_air_W_m2K2,
         per_lag_W_m2Ks=fit.h_per_lag_W_m2Ks,
-        air_u_K=fit.asymptote_u_K,
+        air_u_K=air_u_K,
         time_constant_s=fit.time_constant_s,
         body_mean_C=fit.body_mean_C,
         conduction=fit.model != "lumped",

@@ -69,12 +69,13 @@ def test_a_weighed_bodys_nusselt_number_hardly_depends_on_its_diameter():
 
 def test_readings_and_measured_air_together_are_the_fits_own_uncertainty():
     """The fit's variance holds the air's; the budget splits it and adds nothing."""
-    setup = bench()
-    fit = invented_fit(setup, h_u_W_m2K=0.05, h_u_fixed_air_W_m2K=0.03, h_per_air_W_m2K2=2.0, asymptote_u_K=0.02)
+    setup = bench(air={"temperature_u_K": 0.02})
+    fit = invented_fit(setup, h_u_W_m2K=0.09, h_per_measured_air_W_m2K2=2.0)
     lines = {one.input: one for one in budget_of(fit, setup).lines()}
     both = sqrt(sum((lines[name].u * lines[name].sensitivity) ** 2
                     for name in ("readings and their fit", "air temperature")))  # fmt: skip
     assert both == pytest.approx(fit.h_u_W_m2K, rel=1e-3)
+    assert lines["air temperature"].u == 0.02
     assert not any("resolution" in name for name in lines)
 
 
@@ -111,10 +112,11 @@ def test_halving_every_uncertainty_halves_that_of_h(diameter, length, h, emissiv
                      heat_capacity_u_rel=0.01, emissivity_u=0.005),
         thermometer=replace(thermometer, accuracy_K=thermometer.accuracy_K / 2,
                             gain_u_rel=thermometer.gain_u_rel / 2),
+        air=replace(setup.air, temperature_u_K=setup.air.temperature_u_K / 2),
         recording=replace(setup.recording, tap_lag_u_s=setup.recording.tap_lag_u_s / 2),
     )  # fmt: skip
     fit = invented_fit(setup, h)
-    calm = replace(fit, h_u_fixed_air_W_m2K=fit.h_u_fixed_air_W_m2K / 2, asymptote_u_K=fit.asymptote_u_K / 2)
+    calm = replace(fit, h_u_W_m2K=fit.h_u_W_m2K / 2)
     assert budget_of(calm, half).h.u == pytest.approx(budget_of(fit, setup).h.u / 2, rel=2e-3)
 
 

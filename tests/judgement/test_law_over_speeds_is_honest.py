@@ -47,8 +47,8 @@ def session(generator, speeds=SPEEDS):
         setup = replace(nominal, flow=replace(nominal.flow, velocity_m_s=read))
         seen = body.mass_kg * c / (tau * pi * body.diameter_m * body.length_m)
         measured = seen - radiation_W_m2K(body.emissivity, body_C, air_C, air_C)
-        answers.append(invented_answer(setup, measured, body_mean_C=body_C, h_per_air_W_m2K2=0.0,
-                                       h_u_fixed_air_W_m2K=0.0007 * total))  # fmt: skip
+        answers.append(invented_answer(setup, measured, body_mean_C=body_C, h_u_W_m2K=0.0007 * total,
+                                       h_per_measured_air_W_m2K2=0.0))  # fmt: skip
     return answers
 
 
