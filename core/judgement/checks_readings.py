@@ -4,7 +4,7 @@ Each function looks at one thing; the table at the end gives its name, unit and 
 
 from __future__ import annotations
 
-from math import log, sqrt
+from math import hypot, log
 
 from core.judgement.evidence import COMMON_PRACTICE, Evidence, Finding, Rule, beyond, unknown
 from core.judgement.patterns import (
@@ -133,17 +133,11 @@ def pattern(evidence: Evidence) -> Finding:
 
 
 def asymptote(evidence: Evidence) -> Finding:
-    """The temperature that the readings alone head for, against the measured air.
-
-    The fit joins both: with prior variance s² and posterior variance v the readings alone stand s²/(s² − v) times
-    as far from the measured air as the fit does, and that distance has the standard deviation s²/√(s² − v)
-    (product of two normal densities)."""
-    fit, prior_u = evidence.fit, evidence.setup.air.temperature_u_K
-    drawn = prior_u**2 - fit.asymptote_u_K**2
-    if drawn <= (0.02 * prior_u) ** 2:
+    """The temperature that the readings alone head for, against the measured air."""
+    if evidence.free_air_K is None:
         return unknown("The readings say nothing of the air temperature.")
-    pull = prior_u**2 / drawn
-    free, limit = fit.asymptote_shift_K * pull, ASYMPTOTE_SIGMAS * sqrt(drawn) * pull
+    free, u = evidence.free_air_K
+    limit = ASYMPTOTE_SIGMAS * hypot(u, evidence.setup.air.temperature_u_K)
     outcome = beyond(abs(free), limit)
     if outcome == "good":
         return Finding("good", free, limit, "The readings head for the measured air temperature.")

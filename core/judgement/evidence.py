@@ -26,12 +26,14 @@ class Earlier:
 @dataclass(frozen=True, slots=True)
 class Evidence:
     """One run for the checks. Shares are of the whole heat flow at mid-run; `mass_ratio` is weighed over computed
-    mass; `richardson` is Gr/Re²; None where a value cannot be had."""
+    mass; `richardson` is Gr/Re²; `free_air_K` how far above the measured air the readings alone head, with its
+    standard uncertainty; None where a value cannot be had."""
 
     readings: Readings
     setup: Setup
     fit: CoolingFit
     h_U95_rel: float
+    free_air_K: tuple[float, float] | None
     radiation_share: float
     stem_share: float
     velocity_before_m_s: float | None

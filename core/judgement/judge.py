@@ -14,6 +14,7 @@ from core.convection.flow import velocity_at_body, velocity_before_m_s
 from core.convection.numbers import grashof, richardson
 from core.cooling.estimator import fit_cooling
 from core.cooling.fit import CoolingFit
+from core.errors import NoAnswer
 from core.judgement.answer import Answer
 from core.judgement.budget import Budget, budget_of
 from core.judgement.evidence import Earlier, Evidence
@@ -21,6 +22,7 @@ from core.judgement.relation import film_air, mid_air_C
 from core.judgement.series import CALIBRATION_SHARE, SAME_SPEED_REL
 from core.judgement.verdict import conclude, run_checks
 
+FREE_AIR_K = 5.0  # far wider than any thermometer is off
 SPEED_EXPONENT = 0.6  # h ~ v^0.6 between two almost equal speeds: Zukauskas 1972, Re 10³ to 2·10⁵
 
 
@@ -76,6 +78,7 @@ def judge(
             setup=setup,
             fit=fit,
             h_U95_rel=budget.h.U / abs(fit.h_W_m2K),
+            free_air_K=free_air_K(readings, setup, fit, rulings),
             radiation_share=fit.h_radiation_W_m2K / whole,
             stem_share=fit.h_stem_W_m2K / whole,
             velocity_before_m_s=velocity_before_m_s(setup) if forced else None,
@@ -117,6 +120,21 @@ def judge(
         setup=setup,
         fit=fit,
     )
+
+
+def free_air_K(
+    readings: Readings, setup: Setup, fit: CoolingFit, rulings: Sequence[Ruling]
+) -> tuple[float, float] | None:
+    """Asymptote of the readings alone minus the measured air, and its standard uncertainty [K]: the same fit with
+    the air temperature left almost free. None where the readings do not say."""
+    loose = replace(setup, air=replace(setup.air, temperature_u_K=FREE_AIR_K))
+    try:
+        free = fit_cooling(readings, loose, start_s=fit.window_s[0], rulings=rulings, warm=fit)
+    except NoAnswer:
+        return None
+    if free.asymptote_u_K > 0.5 * FREE_AIR_K:
+        return None
+    return free.asymptote_shift_K, free.asymptote_u_K
 
 
 def mass_ratio(setup: Setup) -> tuple[float | None, float]:

@@ -47,7 +47,7 @@ def evidence(readings=None, setup=None, fit=None, **changes):
     fields = {"used": (True,) * n, "residual_score": scores, "window_s": (readings.time_s[0], readings.time_s[-1])}
     whole = replace(sound, **{**fields, **(fit or {})})
     return Evidence(**{
-        "readings": readings, "setup": setup, "fit": whole, "h_U95_rel": 0.04,
+        "readings": readings, "setup": setup, "fit": whole, "h_U95_rel": 0.04, "free_air_K": (0.01, 0.03),
         "radiation_share": 0.01, "stem_share": 0.0, "velocity_before_m_s": 8.0, "richardson": 0.001,
         "mass_ratio": 1.0, "mass_ratio_u": 0.007, "expected": expected_for(setup, 53.0), "earlier": (), **changes,
     })  # fmt: skip
@@ -85,7 +85,7 @@ CASES = {
     "a start left out by the program": ("start", "look", {"fit": {"window_s": (30.0, 300.0)}}),
     "a third of the record left out": ("start", "again", {"fit": {"window_s": (110.0, 300.0)}}),
     "an asymptote above the air": (
-        "asymptote", "again", {"fit": {"asymptote_shift_K": 0.15, "asymptote_u_K": 0.01}}),
+        "asymptote", "again", {"free_air_K": (0.5, 0.05)}),
     "residuals in a slow wave": (
         "residual pattern", "again", {"fit": {"residual_score": tuple(2 * np.sin(np.arange(58) / 8))}}),
     "residuals that alternate": (
