@@ -81,7 +81,7 @@ class Recorder(EventDispatcher):
         record = self._records.run(run)
         setup = record.setup
         keep = partial(self._records.keep, record.session, run)
-        tally = Tally(setup.thermometer.resolution_K, keep, record.events)
+        tally = Tally(setup.thermometer.resolution_K, keep, record.events, setup.thermometer.refresh_s)
         display = rehearsing.display_of(record.state.opened, setup)
         self.simulated_display = None if display is None else lambda: display.text(self.device.clock.now_s())
         start_C = self._usual_start_C(record) if display is None else display.first_to_tap_C

@@ -7,8 +7,9 @@ from decimal import Decimal
 
 from core.bench.readings import Readings
 from core.bench.setup import Setup
+from core.recording.completion import nearest
 from core.recording.run_state import RunState
-from core.recording.tally import Confirmed, Question, Refused, Tally, completions
+from core.recording.tally import Confirmed, Question, Refused, Tally
 from mobileapp.beat import BeatPlayer
 from mobileapp.device.ports import Device, Stamp
 from mobileapp.preferences import Preferences
@@ -164,9 +165,10 @@ class Running:
         self._answered_beat = entry.index
         if self._tally.state.rows:
             return self._tally.last_digits(digits, entry.at_s)
-        candidates = completions(digits, self.start_C, self.setup.thermometer.resolution_K)
-        nearest = min(candidates, key=lambda one: abs(one - self.start_C))
-        return self._tally.first(nearest, entry.at_s)
+        first_C = nearest(digits, self.start_C, self.setup.thermometer.resolution_K)
+        if first_C is None:
+            return Refused("entry", "")
+        return self._tally.first(first_C, entry.at_s)
 
     def skip_beat(self, stamp: Stamp) -> Felt:
         beat = self._newest_beat

@@ -92,6 +92,7 @@ class RecordScreen(Page):
         self.title = self.model.run_title(view.run)
         decimals = self._decimals(view)
         self.start_text = number(view.start_C, decimals)
+        self._paint_entry(view)
         pad_widget = self.ids.pad
         shown = view.start_C if self.waiting or view.shown_C is None else view.shown_C
         pad_widget.figure = f"{number(shown, decimals)}"
@@ -102,13 +103,12 @@ class RecordScreen(Page):
             pad_widget.caption = _("Tap when the display becomes {reading} °C").format(reading=self.start_text)
             pad_widget.hint = _("Set the first number with the keys at the edge.")
         elif self.beat_mode:
-            pad_widget.caption = ""
+            pad_widget.caption = "" if self.ids.deck.roomy else f"{self.beat_word}   {self.beat_prefix}"
             pad_widget.hint = _("Type the last digits that the display shows at the beat.")
         else:
             pad_widget.caption = _("next {reading} °C").format(reading=number(view.next_C, decimals))
             pad_widget.hint = ""
         self._paint_level(view)
-        self._paint_entry(view)
 
     def _decimals(self, view: PadView) -> int:
         return max(0, len(f"{view.resolution_K:g}".partition(".")[2]))
@@ -256,3 +256,4 @@ class RecordScreen(Page):
         else:
             self.beat_word = _("Beat {count}").format(count=beat.index + 1)
             self.ids.pad.confirm()
+        self._paint()

@@ -84,12 +84,19 @@ class ThumbDeck(BoxLayout):
 
     __events__ = ("on_digit",)
     shown = BooleanProperty(True)
+    roomy = BooleanProperty(True)
+    room = NumericProperty(10_000.0)
+    key_height = NumericProperty(0.0)
     key_size = NumericProperty(0.0)
     words = StringProperty("")
     entry = StringProperty("")
 
     def on_digit(self, name: str, touch: Any) -> None:
         """A key of either block came down."""
+
+    def fitting_height(self, key_size: float, room: float, *_bound: Any) -> float:
+        """As tall as wide, but on a low screen the pad above keeps a strip."""
+        return max(look.target, min(key_size, (room - look.target - 4 * look.grid) / 3))
 
     def key_width(self, width: float, *_bound: Any) -> float:
         """Glove-sized keys where they fit, smaller ones on a phone."""

@@ -37,7 +37,7 @@ class EdgeLayout(Layout):
         wide = self.width > self.height
         gap = look.grid
         along = self.height if wide else self.width
-        room = max(1, int((along + gap) // (look.glove + gap)))
+        room = max(1, int(along // (look.glove + gap)))
         if len(edges) > 2 * room or (len(edges) > room and room < 3):
             edges = [edge for edge in edges if not getattr(edge, "dispensable", False)]
         near: list[Any] = []
@@ -51,10 +51,11 @@ class EdgeLayout(Layout):
         start, end = 0.0, 0.0
         if far:
             self._line(far, wide, at_start=far_first or not wide)
-            start, end = (look.glove + gap, 0.0) if far_first or not wide else (0.0, look.glove + gap)
+            taken = look.glove + (1.5 if wide else 1.0) * gap
+            start, end = (taken, 0.0) if far_first or not wide else (0.0, taken)
         if near:
             self._line(near, wide, at_start=not (far_first or not wide))
-            start, end = look.glove + gap, look.glove + gap
+            start, end = taken, taken
         if wide:
             middle.pos = (self.x + start, self.y)
             middle.size = (self.width - start - end, self.height)
@@ -66,14 +67,15 @@ class EdgeLayout(Layout):
         """Share one edge among the parts: from the top down, or from left to right."""
         gap = look.grid
         along = self.height if wide else self.width
-        length = (along - gap * (len(parts) - 1)) / len(parts)
+        inset = gap / 2  # from the rim of the screen
+        length = (along - 2 * inset - gap * (len(parts) - 1)) / len(parts)
         for i, part in enumerate(parts):
             part.size_hint = (None, None)
             if wide:
                 part.size = (look.glove, length)
-                x = self.x if at_start else self.right - look.glove
-                part.pos = (x, self.top - (i + 1) * length - i * gap)
+                x = self.x + gap / 2 if at_start else self.right - look.glove - gap / 2
+                part.pos = (x, self.top - inset - (i + 1) * length - i * gap)
             else:
                 part.size = (length, look.glove)
                 y = self.top - look.glove if at_start else self.y
-                part.pos = (self.x + i * (length + gap), y)
+                part.pos = (self.x + inset + i * (length + gap), y)

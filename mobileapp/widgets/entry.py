@@ -51,6 +51,11 @@ def from_si(value: float, si_unit: str, unit: str) -> float:
     return value / FACTORS.get(si_unit, {}).get(unit, 1.0)
 
 
+def columns_for(width: float, body: float, count: int) -> int:
+    """How many buttons of an ordinary word stand beside each other."""
+    return max(1, min(3, count, int(width // (body * 7.4))))
+
+
 class LineInput(TextInput):
     """A line to write on, as tall as a finger's target."""
 
@@ -83,6 +88,8 @@ class ValueEntry(BoxLayout):
         self.unit_word = self.unit
         self.help_text = _help(description)
         self.set_value(value)
+
+    fitting = staticmethod(columns_for)
 
     def set_value(self, value: Any) -> None:
         """Show an SI value in the unit at hand."""
@@ -166,10 +173,11 @@ class ChoiceEntry(BoxLayout):
             button.word = word
             button.bind(on_release=lambda pressed: setattr(self, "chosen", pressed.word))
             self.ids.choices.add_widget(button)
-        self.ids.choices.cols = 1 if len(description.choices) == 1 else min(3, len(description.choices))
         self.bind(chosen=self._mark)
         self.chosen = value
         self._mark()
+
+    fitting = staticmethod(columns_for)
 
     def _mark(self, *_args: Any) -> None:
         for button in self.ids.choices.children:

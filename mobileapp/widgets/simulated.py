@@ -11,6 +11,7 @@ from kivy.properties import ObjectProperty, StringProperty
 from kivy.uix.boxlayout import BoxLayout
 
 from mobileapp.trace import trace
+from mobileapp.widgets import basics  # noqa: F401  the .kv of this widget uses them
 
 LOOKED_AT_S = 1 / 100
 
