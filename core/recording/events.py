@@ -189,6 +189,14 @@ _KINDS: dict[str, type] = {
     )
 }
 
+_TYPES: dict[str, tuple[type, ...]] = {
+    "str": (str,),
+    "bool": (bool,),
+    "int": (int,),
+    "float": (int, float),
+    "None": (type(None),),
+}
+
 
 @dataclass(frozen=True, slots=True)
 class Kept:
@@ -212,18 +220,33 @@ def from_text(body: str) -> Event:
 
     Raises
     ------
-    JournalFault : the line is not an event at all.
+    JournalFault : the line is not an event at all, or an event of a known kind with a value missing or wrong.
     """
     try:
-        values: dict[str, Any] = json.loads(body)
+        values: dict[str, Any] = json.loads(body, parse_constant=_no_such_number)
         kind = values.pop("kind")
-    except (ValueError, KeyError, AttributeError, TypeError) as fault:
+    except (ValueError, KeyError, AttributeError, TypeError, RecursionError) as fault:
         raise JournalFault(f"A line of the journal is not an event: {body[:60]!r}.") from fault
-    known = _KINDS.get(kind)
+    known = _KINDS.get(kind) if isinstance(kind, str) else None
     if known is None or not set(values) <= {one.name for one in fields(known)}:
         return Foreign(body)
+    for one in fields(known):
+        if one.name in values and not _fits(values[one.name], str(one.type)):
+            raise JournalFault(f"An event '{kind}' of the journal has a wrong {one.name}: {body[:60]!r}.")
     try:
         event: Event = known(**values)
     except TypeError as fault:
         raise JournalFault(f"An event '{kind}' of the journal lacks a value: {body[:60]!r}.") from fault
     return event
+
+
+def _fits(value: object, annotation: str) -> bool:
+    """Whether a value can stand where this type is named."""
+    types = [_TYPES[name] for name in annotation.split(" | ")]
+    if isinstance(value, bool):
+        return (bool,) in types
+    return any(isinstance(value, one) for one in types)
+
+
+def _no_such_number(word: str) -> float:
+    raise ValueError(f"{word} is no number that an event can hold")

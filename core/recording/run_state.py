@@ -3,7 +3,7 @@
 from __future__ import annotations
 
 from collections.abc import Sequence
-from dataclasses import dataclass
+from dataclasses import dataclass, replace
 
 from core.bench.readings import Readings, Ruling
 from core.recording.events import (
@@ -23,6 +23,9 @@ from core.recording.events import (
 )
 
 Entry = Tapped | Typed | BeatSkipped | Marked
+
+SAME_MOMENT_S = 2e-6
+"""Two stamps closer than this are one moment: readings are written with whole microseconds."""
 
 
 @dataclass(frozen=True, slots=True)
@@ -66,7 +69,7 @@ def derive(events: Sequence[Kept], resolution_K: float) -> RunState:
     """The state of a run from its events, in the order in which they were kept.
 
     A tap counts down from the reading before it in time, so a number entered late for an earlier stamp moves
-    the taps after it. Rows with the same stamp keep the order of their events; only the last one of them counts.
+    the taps after it. Of rows with the same stamp only the one kept last counts.
 
     Parameters
     ----------
@@ -115,6 +118,22 @@ def derive(events: Sequence[Kept], resolution_K: float) -> RunState:
     )
 
 
+def advance(state: RunState, events: Sequence[Kept], resolution_K: float) -> RunState:
+    """The state after the last of the events, where `state` is what all but the last add up to.
+
+    It is what `derive` gives, without going through the whole run at every tap."""
+    new = events[-1]
+    event, rows = new.event, state.rows
+    if not isinstance(event, Tapped | Typed) or not rows or event.stamp_s - rows[-1].stamp_s < SAME_MOMENT_S:
+        return derive(events, resolution_K)
+    if isinstance(event, Typed):
+        reading = event.reading_C
+    else:
+        reading = step_down(rows[-1].reading_C, event.steps, resolution_K)
+    row = Row(event.stamp_s, reading, new.number)
+    return replace(state, rows=(*rows, row), undoable=(*state.undoable, new.number))
+
+
 def _rows(entries: Sequence[Kept], resolution_K: float) -> tuple[Row, ...]:
     timed = [(one.event, one.number) for one in entries if isinstance(one.event, Tapped | Typed)]
     timed.sort(key=lambda pair: (pair[0].stamp_s, pair[1]))
@@ -126,7 +145,7 @@ def _rows(entries: Sequence[Kept], resolution_K: float) -> tuple[Row, ...]:
             reading = step_down(rows[-1].reading_C, event.steps, resolution_K)
         else:
             continue
-        if rows and rows[-1].stamp_s == event.stamp_s:
+        if rows and event.stamp_s - rows[-1].stamp_s < SAME_MOMENT_S:
             rows.pop()
         rows.append(Row(event.stamp_s, reading, number))
     return tuple(rows)

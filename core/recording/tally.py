@@ -5,21 +5,21 @@ reason."""
 
 from __future__ import annotations
 
+import math
 from collections.abc import Callable
 from dataclasses import dataclass
 from decimal import Decimal
 from typing import Literal
 
 from core.errors import JournalFault
+from core.recording.completion import HIGHEST_C, LOWEST_C, complete
 from core.recording.events import BeatSkipped, Event, Kept, Marked, RunEnded, Tapped, Typed, Undone
-from core.recording.run_state import RunState, derive, step_down
+from core.recording.run_state import SAME_MOMENT_S, RunState, advance, derive, step_down
 
 DEAD_TIME_S = 0.04
 """A second contact within this time of the last one is the same palm or glove. A finger that taps ten times a
 second leaves 0.1 s between contacts, and a display renewed every 0.1 s still changes no faster; bouncing contacts
 of one hand lie a few milliseconds apart (common practice: 5 to 20 ms for switches)."""
-
-LOWEST_C, HIGHEST_C = -50.0, 200.0
 
 State = Literal["waiting", "running", "ended"]
 
@@ -65,13 +65,19 @@ class TallyView:
 
 
 class Tally:
-    """One run being recorded.
+    """One run being recorded on a display with steps of `resolution_K` [K], renewed each `refresh_s` [s].
 
     `keep` writes an event durably and gives it back with its number, or raises JournalFault. `events` are those
     already kept, when a run goes on after the app was stopped."""
 
-    def __init__(self, resolution_K: float, keep: Callable[[Event], Kept], events: tuple[Kept, ...] = ()) -> None:
-        self._resolution_K = resolution_K
+    def __init__(
+        self,
+        resolution_K: float,
+        keep: Callable[[Event], Kept],
+        events: tuple[Kept, ...] = (),
+        refresh_s: float = 0.0,
+    ) -> None:
+        self._resolution_K, self._refresh_s = resolution_K, refresh_s
         self._keep = keep
         self._events = list(events)
         self._state = derive(self._events, resolution_K)
@@ -115,12 +121,14 @@ class Tally:
         rows = self.state.rows
         if not rows:
             return Refused("early", "Give the number on the display first; then tap at each change.")
-        if stamp_s <= rows[-1].stamp_s:
+        if steps < 1:
+            return Refused("entry", "A tap counts one step down or more; type the number where the display rose.")
+        if stamp_s - rows[-1].stamp_s < SAME_MOMENT_S:
             return Refused("order", "This tap would lie before the last reading; nothing was counted.")
         reading = step_down(rows[-1].reading_C, steps, self._resolution_K)
         if reading < LOWEST_C:
             return Refused("range", f"{reading:g} °C is below every display that is meant here.")
-        return self._kept(Tapped(stamp_s, steps), reading)
+        return self._kept(Tapped(float(stamp_s), int(steps)), reading)
 
     def typed(self, reading_C: float, stamp_s: float) -> Confirmed | Refused:
         """The display showed `reading_C` [°C] at the stamp [s], now or earlier."""
@@ -132,23 +140,24 @@ class Tally:
             return Refused(
                 "entry", f"{reading_C:g} °C lies between two steps of the display ({self._resolution_K:g} K)."
             )
-        return self._kept(Typed(stamp_s, reading_C), reading_C)
+        return self._kept(Typed(float(stamp_s), float(reading_C)), reading_C)
 
     def last_digits(self, digits: str, stamp_s: float) -> Confirmed | Refused | Question:
-        """The last digits of the display at a beat [s]; the rest follows from the reading before.
-
-        The number taken is the nearest one with these last digits at or below the reading before, or within two
-        steps above it; where the step down would be more than half a turn of the digits, it is asked."""
-        rows = [row for row in self.state.rows if row.stamp_s < stamp_s]
-        if not digits.isdigit():
+        """The last digits of the display at a beat [s]; the rest follows from the readings before, or is asked."""
+        if refusal := self._not_now(stamp_s, contact=False):
+            return refusal
+        rows = [row for row in self.state.rows if stamp_s - row.stamp_s >= SAME_MOMENT_S]
+        if not (digits.isascii() and digits.isdigit()):
             return Refused("entry", "Only digits can be the last digits of a display.")
         if not rows:
             return Refused("early", "Give the whole number for the first beat; then the last digits are enough.")
-        candidates = completions(digits, rows[-1].reading_C, self._resolution_K)
-        if len(candidates) > 1:
-            self._question = Question(stamp_s, candidates)
-            return self._question
-        return self.typed(candidates[0], stamp_s)
+        completion = complete(digits, rows, stamp_s, self._resolution_K, self._refresh_s)
+        if not completion.candidates_C:
+            return Refused("entry", f"This display shows no number ending with {digits}; type the whole number.")
+        if completion.certain:
+            return self.typed(completion.candidates_C[0], stamp_s)
+        self._question = Question(stamp_s, completion.candidates_C)
+        return self._question
 
     def answer(self, reading_C: float) -> Confirmed | Refused:
         """The person says which number was meant."""
@@ -159,7 +168,6 @@ class Tally:
 
     def skip(self, stamp_s: float) -> Confirmed | Refused:
         """The beat at the stamp [s] passed without a reading."""
-        self._question = None
         return self._not_now(stamp_s, contact=False) or self._kept(BeatSkipped(stamp_s), None)
 
     def mark(self, name: str, stamp_s: float) -> Confirmed | Refused:
@@ -185,6 +193,8 @@ class Tally:
     def _not_now(self, stamp_s: float, *, contact: bool) -> Refused | None:
         if self.state.ended:
             return Refused("ended", "This run has ended; start the next one.")
+        if not math.isfinite(stamp_s):
+            return Refused("order", "The clock gave no time for this; nothing was counted.")
         if not contact:
             return None
         last, self._last_contact_s = self._last_contact_s, stamp_s
@@ -193,7 +203,7 @@ class Tally:
         return None
 
     def _on_grid(self, reading_C: float) -> bool:
-        steps = Decimal(repr(reading_C)) / Decimal(repr(self._resolution_K))
+        steps = Decimal(repr(float(reading_C))) / Decimal(repr(float(self._resolution_K)))
         return abs(steps - steps.to_integral_value()) < Decimal("1e-6")
 
     def _kept(self, event: Event, reading_C: float | None) -> Confirmed | Refused:
@@ -202,35 +212,7 @@ class Tally:
         except JournalFault as fault:
             return Refused("journal", str(fault))
         self._events.append(kept)
-        self._state = derive(self._events, self._resolution_K)
+        self._state = advance(self._state, self._events, self._resolution_K)
         self._question = None
         return Confirmed(kept.number, reading_C)
 
-
-def completions(digits: str, before_C: float, resolution_K: float) -> tuple[float, ...]:
-    """The numbers that a person can mean by the last digits of a display, nearest to the step before first.
-
-    A display falls: the number meant is at or below the one before, or at most two steps above it (meter noise).
-    One candidate means that it is certain; a second is given where the fall to the first would be more than
-    half of the turn of these digits, so that one turn may have been missed or a digit mistyped.
-
-    Parameters
-    ----------
-    digits : the last digits as typed, most significant first
-    before_C : the reading before [°C]
-    resolution_K : step of the display [K]
-    """
-    step = Decimal(repr(resolution_K)).normalize()
-    places = max(0, -int(step.as_tuple().exponent))
-    unit = Decimal(1).scaleb(-places)
-    turn = unit * 10 ** len(digits)
-    wanted = Decimal(digits) * unit
-    before = Decimal(repr(before_C))
-    top = before + 2 * step
-    base = (top - wanted) // turn * turn + wanted
-    if base > top:
-        base -= turn
-    fall = before - base
-    if fall * 2 <= turn:
-        return (float(base),)
-    return float(base), float(base + turn)
