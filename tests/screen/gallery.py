@@ -1,6 +1,6 @@
 """Every screen as a picture, and what is wrong with it: texts that are cut, targets that are too small.
 
-`python tests/screen/gallery.py OUT --size 1280x800 --density 1 --palette day --text 1.0 [--language en] [--only home]`
+`python tests/screen/gallery.py OUT --size 1280x800 --density 1 --palette day --text 1.0 [--only home]`
 draws without any display (SDL's offscreen driver) and prints one JSON object. The data are invented here: a bench
 of a small maker of fruit-drying cabinets, four runs whose taps follow a simulated display with a seeded hand."""
 
@@ -315,7 +315,7 @@ class Gallery:
         return faults
 
     def _small_targets(self, page: object) -> list[str]:
-        """Targets below 12 mm; on the record screen, used in gloves, below 22 mm (on a phone 15, its digits 12)."""
+        """Targets below 12 mm; on the record screen, used in gloves, below 22 mm (on a phone 15, digits 12)."""
         gloved = page.name == "record"
         phone = min(self.window.width, self.window.height) < 500 * float(self.arguments.density)
         least_mm = (15.0 if phone else 22.0) if gloved else 12.0
@@ -328,7 +328,8 @@ class Gallery:
             if widget.height < 2 or widget.width < 2:
                 continue
             small = min(widget.width, widget.height) / per_mm
-            limit = 12.0 if phone and (type(widget).__name__ == "DigitKey" or page.asking_number) else least_mm
+            on_phone = phone and (type(widget).__name__ == "DigitKey" or getattr(page, "asking_number", False))
+            limit = 12.0 if on_phone else least_mm
             if small < limit - 0.05:
                 faults.append(
                     f"small: {type(widget).__name__} {getattr(widget, 'text', '')[:20]!r} {small:.1f} mm"
