@@ -1,7 +1,7 @@
 """The catalogue of texts: `python buildspec/catalogue.py` gathers every text from the sources into the .pot file,
 brings each .po up to date without losing a translation, and compiles it.
 
-Texts are the arguments of `_` in the app's .py and .kv files, and the sentences of the core that a person reads;
+Texts are the arguments of `_` and `later` in the app, and the sentences of the core that a person reads;
 there a formatted sentence becomes one with slots: `f"{n} readings"` is kept as `{0} readings`."""
 
 from __future__ import annotations
@@ -51,7 +51,7 @@ def _called_texts(tree: ast.AST) -> list[str]:
         for node in ast.walk(tree)
         if isinstance(node, ast.Call)
         and isinstance(node.func, ast.Name)
-        and node.func.id == "_"
+        and node.func.id in ("_", "later")
         and node.args
         and isinstance(node.args[0], ast.Constant)
         and isinstance(node.args[0].value, str)

@@ -15,6 +15,7 @@ from kivy.properties import ObjectProperty, StringProperty
 from core.bench.readings import Readings, Ruling
 from core.bench.setup import Setup
 from core.bench.setup_file import setup_to_text
+from core.handover.session import ExportSession
 from core.recording.events import (
     BenchDescribed,
     Decided,
@@ -29,6 +30,7 @@ from mobileapp import rehearsing
 from mobileapp.cautions import touch_safe_in_s
 from mobileapp.device.ports import Device
 from mobileapp.figures import number
+from mobileapp.outward import exported, taken_in
 from mobileapp.preferences import Preferences
 from mobileapp.recorder import FORGOTTEN_S, Recorder
 from mobileapp.records import Record, Records
@@ -114,6 +116,28 @@ class Model(EventDispatcher):
         if self._records.session_setup(session) != setup:
             self._records.keep(session, None, BenchDescribed(setup_to_text(setup)))
         self._refresh()
+
+    def open_demo(self) -> None:
+        """The invented session that comes with the app; taken in once."""
+        from core.demo.cabinet_bench import FOLDER
+        from core.handover.export import read_session
+
+        for kept in self._records.sessions():
+            if kept.event.invented:
+                self.open_session(str(kept.session))
+                return
+        self.take_in(read_session(FOLDER), invented=True)
+
+    def take_in(self, session: ExportSession, invented: bool = False) -> None:
+        """Take a session that was exported elsewhere into the journal, as a session of its own."""
+        opening = SessionOpened(session.name, self.device.clock.wall_iso(), invented)
+        session_number = self._records.open_session(opening)
+        if session.runs:
+            self._records.keep(session_number, None, BenchDescribed(setup_to_text(session.runs[-1].setup)))
+        for run in session.runs:
+            opened, events = taken_in(run)
+            self._records.keep_all(session_number, self._records.open_run(session_number, opened), events)
+        self.open_session(str(session_number))
 
     # ------------------------------------------------------------------ runs
 
@@ -230,38 +254,14 @@ class Model(EventDispatcher):
 
         self.ask("series", work, then, failed)
 
-    def export_session(self) -> Any:
+    def export_session(self) -> ExportSession:
         """The session at hand on plain values, with the answers known so far."""
-        from core.handover.session import ExportRun, ExportSession
-
         view = self.session
         if view is None:
             return ExportSession("", ())
-        runs = []
-        for record in self._records.runs(int(view.session)):
-            state = record.state
-            if state.opened is None or not state.rows:
-                continue
-            truth = rehearsing.truth_of(state.opened)
-            kind = "demo" if view.invented else "rehearsal" if record.kind == "rehearsal" else "measured"
-            runs.append(
-                ExportRun(
-                    run=str(record.number),
-                    kind=kind,
-                    setup=record.setup,
-                    readings=state.readings,
-                    note=_decision_note(state.decision),
-                    invented=view.invented,
-                    recorded_at=state.opened.wall_time,
-                    stamp_source=state.opened.stamp_source,
-                    rulings=state.rulings,
-                    start_s=state.start_s,
-                    answer=self._known_answer(record.run),
-                    no_answer="" if self._known_answer(record.run) else "Not fitted yet.",
-                    true_h_W_m2K=truth.h_W_m2K if truth else None,
-                )
-            )
-        return ExportSession(view.title, tuple(runs))
+        records = self._records.runs(int(view.session))
+        runs = (exported(record, view.invented, self._known_answer(record.run)) for record in records)
+        return ExportSession(view.title, tuple(run for run in runs if run is not None))
 
     def touch_safe_s(self, run: str) -> float | None:
         """Seconds until the body of a run just made can be touched; None where nobody can know."""
@@ -343,9 +343,3 @@ def _refusal() -> Exception:
     from core.errors import NoAnswer
 
     return NoAnswer("It has no answer.")
-
-
-def _decision_note(decision: Any) -> str:
-    if decision is None:
-        return ""
-    return decision.decision + (f": {decision.reason}" if decision.reason else "")

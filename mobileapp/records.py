@@ -2,7 +2,7 @@
 
 from __future__ import annotations
 
-from collections.abc import Callable
+from collections.abc import Callable, Sequence
 from dataclasses import dataclass, replace
 from functools import cached_property
 
@@ -93,6 +93,11 @@ class Records:
         if run is not None:
             self._runs.pop(run, None)
         return kept
+
+    def keep_all(self, session: int, run: int, events: Sequence[Event]) -> None:
+        """Write the events of a finished run, all or none."""
+        self._journal.keep_all(session, run, events)
+        self._runs.pop(run, None)
 
     def open_session(self, event: SessionOpened) -> int:
         """Begin a session; returns its number."""

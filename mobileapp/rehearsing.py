@@ -36,9 +36,9 @@ class Truth:
     """What only the simulator knows. `from_s` is the moment [s, monotonic clock] at which the cooling begins."""
 
     h_W_m2K: float
-    start_C: float
-    from_s: float
-    phase_s: float
+    start_C: float = START_C
+    from_s: float = 0.0
+    phase_s: float = 0.0
 
 
 @dataclass(frozen=True, slots=True)

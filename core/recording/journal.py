@@ -70,6 +70,19 @@ class Journal:
         """
         return self._append(session, run, event)
 
+    def keep_all(self, session: int, run: int | None, events: Sequence[Event]) -> None:
+        """Write several events durably, all or none, as when a finished run is taken in from elsewhere."""
+        if self.read_only:
+            raise JournalFault(f"{self.path.name} is open for reading only, so nothing can be recorded here.")
+        number, chain = self._number, self._chain
+        with _faults("written", self.path), transaction(self._db):
+            for event in events:
+                number += 1
+                body = to_text(event)
+                chain = link(chain, number, session, run, body)
+                self._insert(Kept(number, session, run, event), body, chain)
+        self._number, self._chain = number, chain
+
     def events(self, *, session: int | None = None, run: int | None = None) -> tuple[Kept, ...]:
         """The events of a session or a run, or all of them, in their order."""
         where = [f"{column} = ?" for column, value in (("session", session), ("run", run)) if value is not None]

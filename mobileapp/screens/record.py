@@ -104,7 +104,8 @@ class RecordScreen(Page):
             pad_widget.hint = _("Set the first number with the keys at the edge.")
         elif self.beat_mode:
             pad_widget.caption = "" if self.ids.deck.roomy else f"{self.beat_word}   {self.beat_prefix}"
-            pad_widget.hint = _("Type the last digits that the display shows at the beat.")
+            typing = _("Type the last digits that the display shows at the beat.")
+            pad_widget.hint = typing if self.ids.deck.roomy else ""
         else:
             pad_widget.caption = _("next {reading} °C").format(reading=number(view.next_C, decimals))
             pad_widget.hint = ""
