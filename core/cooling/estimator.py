@@ -12,7 +12,7 @@ from core.bench.setup import Setup
 from core.cooling.asymptote import prior_of
 from core.cooling.fit import CoolingFit
 from core.cooling.gather import FEWEST, check, first_guess, gather
-from core.cooling.lumped import lumped_model
+from core.cooling.model import cooling_model
 from core.cooling.outcome import outcome
 from core.cooling.solve import solve
 from core.cooling.start import find_start, latest_start
@@ -44,7 +44,7 @@ def fit_cooling(
     NoAnswer : the readings are too few, do not cool, or do not rise above the air.
     """
     check(readings, setup)
-    model = lumped_model(setup, readings.time_s[-1])
+    model = cooling_model(setup, readings.time_s[-1])
     prior = prior_of(setup)
     whole = gather(readings, setup, model, 0, rulings)
     if warm is not None:

@@ -13,7 +13,7 @@ import numpy as np
 from numpy.typing import NDArray
 
 from core.cooling import chebyshev
-from core.cooling.lumped import STEPS, Curve, LumpedModel
+from core.cooling.model import STEPS, CoolingModel, Curve
 from core.cooling.observation import Bins, Blur
 
 Array = NDArray[np.float64]
@@ -51,7 +51,7 @@ def _derivatives(values: Array) -> Array:
     return result
 
 
-def beat_features(model: LumpedModel, parameters: Array, bins: Bins, record_s: float, blur: Blur) -> Features:
+def beat_features(model: CoolingModel, parameters: Array, bins: Bins, record_s: float, blur: Blur) -> Features:
     """Temperatures at each beat, and one refresh before it where beat and refresh are not commensurate."""
     curve = model.curve(_bundle(parameters), record_s)
     newest, rate = curve.with_rate(bins.time_s)
@@ -63,7 +63,7 @@ def beat_features(model: LumpedModel, parameters: Array, bins: Bins, record_s: f
     return Features(np.array(values), np.array(slopes), rate, float(parameters[1]), curve)
 
 
-def change_features(model: LumpedModel, parameters: Array, bins: Bins, record_s: float) -> Features:
+def change_features(model: CoolingModel, parameters: Array, bins: Bins, record_s: float) -> Features:
     """Crossings of the edges of each tap: into the new bin, out of the old one, out of the new one.
 
     `bins` starts with the reading before the first tap; the features are those of the taps after it."""

@@ -11,7 +11,7 @@ from numpy.typing import NDArray
 from core.bench.readings import Readings, Ruling
 from core.bench.setup import Setup
 from core.cooling.likelihood import Evidence
-from core.cooling.lumped import LumpedModel
+from core.cooling.model import CoolingModel
 from core.cooling.observation import bins_of, blur_of
 from core.errors import NoAnswer
 
@@ -50,7 +50,7 @@ def check(readings: Readings, setup: Setup) -> None:
 
 
 def gather(
-    readings: Readings, setup: Setup, model: LumpedModel, start_row: int = 0, rulings: Sequence[Ruling] = ()
+    readings: Readings, setup: Setup, model: CoolingModel, start_row: int = 0, rulings: Sequence[Ruling] = ()
 ) -> Evidence:
     """The evidence of a record, of which the rows from `start_row` on count."""
     bins = bins_of(readings, setup)

@@ -9,7 +9,7 @@ import numpy as np
 from numpy.typing import NDArray
 
 from core.cooling.features import Features, beat_features, change_features
-from core.cooling.lumped import LumpedModel
+from core.cooling.model import CoolingModel
 from core.cooling.observation import (
     FAULTY,
     STRAY_BINS,
@@ -31,7 +31,7 @@ class Evidence:
     `start_u_K`. `certain` (n,) is true for rows that a person keeps, which are good beyond doubt. The curve runs
     over `record_s` from the first row on."""
 
-    model: LumpedModel
+    model: CoolingModel
     bins: Bins
     blur: Blur
     mode: str

@@ -13,12 +13,13 @@ from core.cooling.asymptote import Prior
 from core.cooling.diagnosis import doubtful, scores
 from core.cooling.fit import CoolingFit, LeftOut
 from core.cooling.likelihood import Evidence, as_normal, log_likelihood
-from core.cooling.lumped import PARAMETERS
+from core.cooling.model import PARAMETERS, CoolingModel
 from core.cooling.solve import Solution
 
 Array = NDArray[np.float64]
 
 CURVE_POINTS = 161
+CONDUCTION_COUNTS = 1e-3
 
 
 def outcome(
@@ -51,7 +52,8 @@ def outcome(
     radiation = model.radiation_W_m2K(mean_C, offset)
     stem = model.stem_loss_W_K / body.area_m2
     total = h + radiation + stem
-    tau = body.capacity_J_K(mean_C) / (total * body.area_m2)
+    inside = _conduction_share(model, solution)
+    tau = body.capacity_J_K(mean_C) / (inside * total * body.area_m2)
     named = doubtful(evidence, features, readings)
     left_out = _left_out(start_row, start_by, readings, rulings, named)
     out = {one.row for one in left_out}
@@ -85,7 +87,7 @@ def outcome(
         phase_s=None,
         covariance=tuple(tuple(float(x) for x in row) for row in covariance),
         parameters=PARAMETERS,
-        model=model.name,
+        model=_model_name(model, inside),
         biot=total * body.volume_m3 / body.area_m2 / body.conductivity_W_mK,
         window_s=window,
         start_by=start_by,
@@ -101,6 +103,21 @@ def outcome(
         profile_interval_W_m2K=_interval(solution) if profile else None,
         body_mean_C=mean_C,
     )
+
+
+def _conduction_share(model: CoolingModel, solution: Solution) -> float:
+    """The share of the lumped conductance that conduction inside the body leaves."""
+    h, start_C = np.exp(solution.parameters[:1]), solution.parameters[1:2]
+    modes = model.modes(h, start_C, np.array([model.air_C + solution.parameters[2]]))
+    return 1.0 if modes is None else float(modes.share[0])
+
+
+def _model_name(model: CoolingModel, inside: float) -> str:
+    """Lumped, where conduction inside changes h by no more than a thousandth; else the shape that conducts."""
+    if 1.0 - inside <= CONDUCTION_COUNTS:
+        return "lumped"
+    names = {1: {"cylinder": "cylinder", "sphere": "sphere"}, 2: {"cylinder": "short cylinder"}}
+    return names.get(len(model.factors), {}).get(model.body.shape, "block")
 
 
 def _per_lag(evidence: Evidence, solution: Solution, prior: Prior) -> float:

@@ -1,7 +1,7 @@
 """The demo session, made by the project's own simulator with a seed: nobody measured it.
 
-A small maker of fruit-drying cabinets wants to know how fast its tube bank warms the air. A brass rod stands in the
-third of five staggered rows; four airspeeds, the second of them twice, and one run with an aluminium rod. The
+A small maker of fruit-drying cabinets wants to know how fast its tube bank warms the air. A brass rod stands in
+the third of five staggered rows; four airspeeds, the second of them twice, and one run with an aluminium rod. The
 true law of this invented bank, Nu = C·Re^m·Pr^(1/3) with the values below, is recorded with each run."""
 
 from __future__ import annotations
@@ -16,6 +16,7 @@ from core.convection.flow import velocity_at_body
 from core.cooling.simulator import Hand, Truth, simulate
 from core.handover.export import export_session
 from core.handover.session import ExportRun, ExportSession
+from core.judgement.answer import Answer
 from core.judgement.judge import judge
 
 FOLDER = Path(__file__).with_name("session")
@@ -90,8 +91,8 @@ def demo_runs() -> tuple[DemoRun, ...]:
 
 def demo_session() -> ExportSession:
     """The demo session with its answers, as an export holds it."""
-    answers = []
-    runs = []
+    answers: list[Answer] = []
+    runs: list[ExportRun] = []
     for count, run in enumerate(demo_runs(), 1):
         answer = judge(run.readings, run.setup, earlier=tuple(answers))
         answers.append(answer)

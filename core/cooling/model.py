@@ -1,6 +1,9 @@
-"""A body at one temperature, cooling by convection, radiation and its stem in air that may drift.
+"""A body cooling by convection, radiation and its stem in air that may drift.
 
-m c(T) dT/dt = −(h A + G)(T − T∞(t)) − ε σ A (T⁴ − T_s⁴)
+m c(T) dT/dt = −w [(h A + G)(T − T∞(t)) + ε σ A (T⁴ − T_s⁴)]
+
+with w = 1 for a body at one temperature, and by conduction inside (`core.cooling.conduction`) below 1; the early
+modes of that conduction come on top.
 
 With θ = T − T∞ and z = ln(θ₀/θ) this becomes dz/dt = f(z, t), nearly constant in time. It is solved by Picard
 iteration on Chebyshev nodes: no time stepping, and the solution can be evaluated anywhere in the window."""
@@ -15,6 +18,7 @@ from numpy.typing import NDArray
 from core.bench.body import ThermalBody, thermal_body
 from core.bench.setup import Setup
 from core.cooling import chebyshev
+from core.cooling.conduction import MODES, Factor, Modes, factors_of, modes_of
 
 Array = NDArray[np.float64]
 
@@ -25,6 +29,9 @@ ROUNDS = 80
 PARAMETERS = ("ln h", "start", "asymptote")
 STEPS = np.array([1e-4, 1e-3, 1e-3])  # for central differences in the parameters
 LARGEST_Z = 30.0
+MEAN_EXCESS = 0.45  # of the first excess over the air: about the mean over a run
+NO_CONDUCTION = 1e-5  # Biot number (half thickness) below which conduction is left out
+EARLY_MODES = 0.03  # Biot number above which the early modes are followed too
 
 
 @dataclass(frozen=True, slots=True)
@@ -32,7 +39,8 @@ class Curve:
     """Temperatures over a record for one or more sets of parameters.
 
     `sensor_C`, `body_C` and `rate_K_s` (of the sensor) stand on the Chebyshev nodes, shape (NODES, sets). The
-    sensor's own transient, of amplitude `fading_K` and time constant `lag_s`, comes on top."""
+    sensor's own transient, of amplitude `fading_K` and time constant `lag_s`, and the early modes of conduction,
+    relative to the excess over the air, come on top."""
 
     length_s: float
     sensor_C: Array
@@ -40,6 +48,9 @@ class Curve:
     rate_K_s: Array
     fading_K: Array
     lag_s: float
+    air_C: Array
+    air_rate_K_s: float
+    modes: Modes | None
 
     def at(self, time_s: Array) -> Array:
         """Sensor temperature [°C] at times [s], shape (len(time_s), sets); beyond the record straight on."""
@@ -55,6 +66,8 @@ class Curve:
         """The same where the interpolation matrix for these times is known already."""
         shown = basis @ self.sensor_C
         rate = basis @ self.rate_K_s[:, 0]
+        if self.modes is not None:
+            shown, rate = self._with_modes(shown, rate, time_s)
         if self.lag_s > 0.0:
             fading = np.exp(-np.maximum(time_s, 0.0) / self.lag_s)
             shown = shown + self.fading_K * fading[:, None]
@@ -67,10 +80,25 @@ class Curve:
             )
         return shown, rate
 
+    def _with_modes(self, shown: Array, rate: Array, time_s: Array) -> tuple[Array, Array]:
+        modes = self.modes
+        if modes is None:
+            return shown, rate
+        time = np.maximum(time_s, 0.0)
+        each = modes.amplitude[:, None, :] * np.exp(-modes.rate_s[:, None, :] * time[None, :, None])
+        more = np.sum(each, axis=0)
+        air = self.air_C + self.air_rate_K_s * time[:, None]
+        change = -np.sum(each[:, :, 0] * modes.rate_s[:, None, 0], axis=0)
+        first = shown[:, 0] - air[:, 0]
+        rate = rate + (rate - self.air_rate_K_s) * more[:, 0] + first * change
+        return shown + (shown - air) * more, rate
+
 
 @dataclass(frozen=True, slots=True)
-class LumpedModel:
-    """The bench as the lumped model needs it; parameters are (ln h, T at the start, asymptote offset)."""
+class CoolingModel:
+    """The bench as the physics needs it; parameters are (ln h, T at the start, asymptote offset).
+
+    T at the start is that of the lasting mode at the sensor, followed back to time 0."""
 
     body: ThermalBody
     stem_loss_W_K: float
@@ -79,7 +107,7 @@ class LumpedModel:
     air_rate_K_s: float
     walls_C: float
     lag_s: float
-    name: str = "lumped"
+    factors: tuple[Factor, ...]
 
     def curve(self, parameters: Array, length_s: float) -> Curve:
         """Temperatures over `length_s` from the start of the record for parameter sets of shape (sets, 3).
@@ -90,13 +118,17 @@ class LumpedModel:
         air = self.air_C + offset + self.air_rate_K_s * time
         theta0 = np.maximum(start_C - air[0], 1e-3)
         integrate = chebyshev.integration() * (length_s / 2.0)
+        modes = self.modes(h, start_C, air[0])
+        inside = 1.0 if modes is None else modes.share
         conductance = h * self.body.area_m2 + self.stem_loss_W_K
         z = conductance / self.body.capacity_J_K(float(np.mean(start_C))) * time
         walls = self.walls_C + offset if self.walls_C == self.air_C else self.walls_C
         for _ in range(ROUNDS):
             theta = theta0 * np.exp(-np.clip(z, -LARGEST_Z, LARGEST_Z))
             body = air + theta
-            rate = (conductance * theta + self._radiation_W(body, walls)) / self.body.capacity_J_K_at(body)
+            rate = (
+                inside * (conductance * theta + self._radiation_W(body, walls)) / self.body.capacity_J_K_at(body)
+            )
             new = integrate @ ((rate + self.air_rate_K_s) / theta)
             change = float(np.max(np.abs(new - z)))
             z = new
@@ -104,13 +136,32 @@ class LumpedModel:
                 break
         theta = theta0 * np.exp(-np.clip(z, -LARGEST_Z, LARGEST_Z))
         body = air + theta
-        rate = -(conductance * theta + self._radiation_W(body, walls)) / self.body.capacity_J_K_at(body)
+        rate = -inside * (conductance * theta + self._radiation_W(body, walls)) / self.body.capacity_J_K_at(body)
+        early = modes if modes is not None and len(modes.amplitude) else None
         if self.lag_s == 0.0:
-            return Curve(length_s, body, body, rate, np.zeros(len(h)), 0.0)
+            return Curve(length_s, body, body, rate, np.zeros(len(h)), 0.0, air[0], self.air_rate_K_s, early)
         derivative = chebyshev.differentiation() * (2.0 / length_s)
         steady = np.linalg.solve(np.eye(chebyshev.NODES) + self.lag_s * derivative, body)
         fading = body[0] - steady[0]
-        return Curve(length_s, steady, body, derivative @ steady, fading, self.lag_s)
+        return Curve(
+            length_s, steady, body, derivative @ steady, fading, self.lag_s, air[0], self.air_rate_K_s, early
+        )
+
+    def modes(self, h_W_m2K: Array, start_C: Array, air_C: Array) -> Modes | None:
+        """Conduction inside the body for sets of h [W/(m²·K)]; None where it would change nothing that counts."""
+        body = self.body
+        middle = air_C + MEAN_EXCESS * (start_C - air_C)
+        losses = self.stem_loss_W_K / body.area_m2
+        whole = (
+            h_W_m2K + losses + self._radiation_W(middle, air_C) / (body.area_m2 * np.maximum(middle - air_C, 1e-3))
+        )
+        biot = float(whole[0]) * max(one.half_m for one in self.factors) / body.conductivity_W_mK
+        if biot < NO_CONDUCTION:
+            return None
+        diffusivity = body.conductivity_W_mK / (body.density_kg_m3 * body.specific_heat_J_kgK(float(middle[0])))
+        count = MODES if biot > EARLY_MODES else 1
+        ratio = body.area_m2 / body.volume_m3
+        return modes_of(self.factors, whole, body.conductivity_W_mK, diffusivity, ratio, count)
 
     def radiation_W_m2K(self, body_C: float, offset_K: float = 0.0) -> float:
         """Radiation [W/(m²·K)] at a surface temperature [°C], over its excess above the air."""
@@ -124,11 +175,11 @@ class LumpedModel:
         return result
 
 
-def lumped_model(setup: Setup, record_s: float) -> LumpedModel:
-    """The lumped model of a bench for a record of `record_s` seconds, over which the air drifts."""
+def cooling_model(setup: Setup, record_s: float) -> CoolingModel:
+    """The model of a bench for a record of `record_s` seconds, over which the air drifts."""
     air = setup.air
     end = air.temperature_C if air.temperature_end_C is None else air.temperature_end_C
-    return LumpedModel(
+    return CoolingModel(
         body=thermal_body(setup.body),
         stem_loss_W_K=setup.body.stem_loss_W_K,
         emissivity=setup.body.emissivity,
@@ -136,4 +187,5 @@ def lumped_model(setup: Setup, record_s: float) -> LumpedModel:
         air_rate_K_s=(end - air.temperature_C) / record_s,
         walls_C=air.temperature_C if air.surroundings_C is None else air.surroundings_C,
         lag_s=setup.thermometer.lag_s,
+        factors=factors_of(setup.body),
     )
