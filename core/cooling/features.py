@@ -20,16 +20,20 @@ Array = NDArray[np.float64]
 
 FINE = 160
 NEWTON_ROUNDS = 2
+LEAST_RATE = 0.2  # of the mean rate: how steeply the curve goes on before the record at the least
 
 
 @dataclass(frozen=True, slots=True)
 class Features:
-    """`value` has shape (kinds, n), `slope` (kinds, n, parameters), `rate_K_s` (n,)."""
+    """`value` has shape (kinds, n), `slope` (kinds, n, parameters), `rate_K_s` (n,).
+
+    `start_C` is the sensor's temperature at time 0 and `start_slope` its derivatives, shape (parameters,)."""
 
     value: Array
     slope: Array
     rate_K_s: Array
     start_C: float
+    start_slope: Array
     curve: Curve
 
     def at(self, shift: Array) -> Array:
@@ -60,7 +64,7 @@ def beat_features(model: CoolingModel, parameters: Array, bins: Bins, record_s: 
         oldest = curve.at(bins.time_s - blur.refresh_s)
         values.append(oldest[:, 0])
         slopes.append(_derivatives(oldest))
-    return Features(np.array(values), np.array(slopes), rate, float(parameters[1]), curve)
+    return Features(np.array(values), np.array(slopes), rate, *_start(curve), curve)
 
 
 def change_features(model: CoolingModel, parameters: Array, bins: Bins, record_s: float) -> Features:
@@ -72,7 +76,12 @@ def change_features(model: CoolingModel, parameters: Array, bins: Bins, record_s
     time, shown, rate = _crossings(curve, edges)
     slope = -_derivatives(shown) / rate[:, None]
     taps = len(bins.time_s) - 1
-    return Features(time.reshape(3, taps), slope.reshape(3, taps, -1), rate[:taps], float(parameters[1]), curve)
+    return Features(time.reshape(3, taps), slope.reshape(3, taps, -1), rate[:taps], *_start(curve), curve)
+
+
+def _start(curve: Curve) -> tuple[float, Array]:
+    shown = curve.at(np.zeros(1))
+    return float(shown[0, 0]), _derivatives(shown)[0]
 
 
 @cache
@@ -93,11 +102,12 @@ def _crossings(curve: Curve, edges_C: Array) -> tuple[Array, Array, Array]:
     time: Array = np.interp(-edges_C, -first, grid)
     below, above = edges_C < first[-1], edges_C > first[0]
     time = np.where(below, grid[-1] + (edges_C - first[-1]) / min(float(rates[-1]), -1e-9), time)
-    time = np.where(above, grid[0] + (edges_C - first[0]) / min(float(rates[0]), -1e-9), time)
+    least = LEAST_RATE * (first[-1] - first[0]) / curve.length_s
+    time = np.where(above, grid[0] + (edges_C - first[0]) / min(float(rates[0]), float(least), -1e-9), time)
     inside = ~(below | above)
     at, rate = curve.with_rate(time)
     for _ in range(NEWTON_ROUNDS):
         step = np.where(inside, (at[:, 0] - edges_C) / np.minimum(rate, -1e-9), 0.0)
         time = time - step
         at, rate = curve.with_rate(time)
-    return time, at, np.minimum(rate, -1e-9)
+    return time, at, np.minimum(rate, min(0.1 * float(least), -1e-9))

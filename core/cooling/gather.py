@@ -18,6 +18,7 @@ from core.errors import NoAnswer
 Array = NDArray[np.float64]
 
 FEWEST = 4
+CONDUCTION_ROUNDS = 6
 NO_WORD_K = 1e3  # standard deviation of a start temperature of which nothing is known
 
 
@@ -98,4 +99,10 @@ def first_guess(evidence: Evidence) -> Array:
     body = model.body
     total = rate * body.capacity_J_K(float(np.mean(middle))) / body.area_m2
     losses = model.stem_loss_W_K / body.area_m2 + model.radiation_W_m2K(float(np.mean(middle[usable])))
-    return np.array([log(max(total - losses, 0.05 * total)), start, 0.0])
+    h = max(total - losses, 0.05 * total)
+    for _ in range(CONDUCTION_ROUNDS):
+        modes = model.modes(np.array([h]), np.array([start]), air[:1])
+        if modes is None:
+            break
+        h = max(total / float(modes.share[0]) - losses, 0.05 * total)
+    return np.array([log(h), start, 0.0])

@@ -85,6 +85,7 @@ def _change_as_normal(evidence: Evidence, features: Features) -> Normal:
         middle, slope, sd = into, features.slope[0], width
     time = evidence.bins.time_s[rows]
     miss = time - blur.tap_lag_s - middle
+    sd = sd * _widening(miss, sd)
     good = np.exp(-0.5 * (miss / sd) ** 2) / (sd * sqrt(2.0 * np.pi))
     return Normal(miss, sd, slope, _share(good, faulty_density(time, into, blur), evidence.faulty()))
 
@@ -97,8 +98,14 @@ def _beat_as_normal(evidence: Evidence, features: Features) -> Normal:
     sd = np.sqrt(step**2 / 12.0 + fall**2 / 12.0 + blur.meter_K**2)
     middle = np.mean(features.value, axis=0)
     miss = (lower + upper) / 2.0 - middle
+    sd = sd * _widening(miss, sd)
     good = np.exp(-0.5 * (miss / sd) ** 2) / (sd * sqrt(2.0 * np.pi)) * step
     return Normal(miss, sd, np.mean(features.slope, axis=0), _share(good, 1.0 / STRAY_BINS, evidence.faulty()))
+
+
+def _widening(miss: Array, sd: Array) -> float:
+    """How much wider the misses lie than their deviations have it; 1 near the solution, large far from it."""
+    return max(1.0, float(np.median(np.abs(miss) / sd)))
 
 
 def _share(good: Array, fault: Array | float, faulty: Array) -> Array:
@@ -111,7 +118,7 @@ def log_likelihood(evidence: Evidence, features: Features, shift: Array) -> Arra
     good, fault = densities(evidence, features.at(shift), features.rate_K_s)
     faulty = evidence.faulty()[:, None]
     logs = np.log((1.0 - faulty) * good + faulty * fault + 1e-300)
-    place = (features.start_C + shift[:, 1] - evidence.start_C) / evidence.start_u_K
+    place = (features.start_C + shift @ features.start_slope - evidence.start_C) / evidence.start_u_K
     result: Array = np.sum(logs[evidence.counts[evidence.rows]], axis=0) - 0.5 * place**2
     return result
 

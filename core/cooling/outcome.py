@@ -134,11 +134,13 @@ def _per_air(evidence: Evidence, solution: Solution) -> float:
 
 
 def _response(evidence: Evidence, solution: Solution, free: list[int], miss: Array) -> float:
-    one = as_normal(evidence, evidence.features(solution.parameters))
+    features = evidence.features(solution.parameters)
+    one = as_normal(evidence, features)
     weight = one.good / one.sd**2 * evidence.counts[evidence.rows]
     slope = one.slope[:, free]
     hessian = (slope * weight[:, None]).T @ slope
-    hessian[1, 1] += 1.0 / evidence.start_u_K**2
+    place = features.start_slope[free] / evidence.start_u_K
+    hessian += np.outer(place, place)
     scale = np.sqrt(np.diag(hessian))
     step = np.linalg.pinv(hessian / np.outer(scale, scale)) @ (slope.T @ (weight * miss) / scale) / scale
     return float(step[0])

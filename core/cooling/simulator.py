@@ -15,11 +15,13 @@ from numpy.typing import NDArray
 from core.bench.body import thermal_body
 from core.bench.readings import Readings
 from core.bench.setup import Setup
+from core.cooling.finite_volume import MIDDLE_C, Decay, decay_in
 
 Array = NDArray[np.float64]
 
 STEFAN_BOLTZMANN_W_M2K4 = 5.670374419e-8  # CODATA 2018
 STEPS_PER_TIME_CONSTANT = 250
+CONDUCTING = 0.03  # Biot number (half thickness) above which all modes of conduction are followed
 STILL_AIR_SHARE = 0.12  # of the forced coefficient, before the fan has run up
 
 
@@ -75,8 +77,14 @@ def cool(truth: Truth) -> Course:
     area, lag = body.area_m2, setup.thermometer.lag_s
     air0 = setup.air.temperature_C
     air1 = air0 if setup.air.temperature_end_C is None else setup.air.temperature_end_C
-    capacity = body.capacity_J_K(60.0)
-    tau = capacity / (truth.h_W_m2K * area + setup.body.stem_loss_W_K)
+    capacity = body.capacity_J_K(MIDDLE_C)
+    middle_C = air0 + 0.45 * (truth.start_C - air0)
+    whole = truth.h_W_m2K + setup.body.stem_loss_W_K / area + _radiation_W_m2K(setup, middle_C)
+    decay = decay_in(setup.body, body, whole)
+    inside = float(decay.rate_s[0]) * capacity / (whole * area)
+    tau = capacity / (inside * whole * area)
+    if whole * body.half_thickness_m / body.conductivity_W_mK > CONDUCTING:
+        return _conducting(truth, decay, tau)
     length = tau * log(max(truth.start_C - air0, 1.0) / max(truth.end_C - air0, 0.5)) + truth.fan_late_s
     step = min(tau / STEPS_PER_TIME_CONSTANT, lag / 5.0 if lag > 0.0 else 1e9)
 
@@ -101,7 +109,7 @@ def cool(truth: Truth) -> Course:
             * area
             * ((body_C + 273.15) ** 4 - (walls + 273.15) ** 4)
         )
-        own = -watts / body.capacity_J_K(body_C)
+        own = -inside * watts / body.capacity_J_K(body_C)
         return own, (body_C - sensor_C) / lag if lag > 0.0 else own
 
     body_C = sensor_C = truth.start_C
@@ -118,6 +126,23 @@ def cool(truth: Truth) -> Course:
         shown.append(sensor_C)
         rates.append(rate(time, body_C, sensor_C)[1])
     return Course(step, np.array(shown) + truth.thermometer_offset_K, np.array(rates))
+
+
+def _radiation_W_m2K(setup: Setup, body_C: float) -> float:
+    walls = setup.air.temperature_C if setup.air.surroundings_C is None else setup.air.surroundings_C
+    fourth = (body_C + 273.15) ** 4 - (walls + 273.15) ** 4
+    return setup.body.emissivity * STEFAN_BOLTZMANN_W_M2K4 * fourth / (body_C - setup.air.temperature_C)
+
+
+def _conducting(truth: Truth, decay: Decay, tau_s: float) -> Course:
+    """A body with steep temperature inside: all modes, at a steady coefficient in steady air."""
+    air = truth.setup.air.temperature_C
+    step = tau_s / STEPS_PER_TIME_CONSTANT / 4.0
+    length = 1.3 * tau_s * log(max(truth.start_C - air, 1.0) / max(truth.end_C - air, 0.5))
+    time = np.arange(0.0, length, step)
+    excess = truth.start_C - air
+    shown = air + excess * decay.at(time) / float(np.sum(decay.share)) + truth.thermometer_offset_K
+    return Course(step, shown, excess * decay.slope_at(time))
 
 
 @dataclass(frozen=True, slots=True)

@@ -9,8 +9,8 @@ from numpy.typing import NDArray
 
 from core.cooling.asymptote import Prior
 from core.cooling.likelihood import Evidence, as_normal, log_likelihood
+from core.cooling.optimiser import gauss_newton
 from core.cooling.posterior import adapt
-from core.errors import NoAnswer
 
 Array = NDArray[np.float64]
 
@@ -33,41 +33,37 @@ class Solution:
 
 
 def search(evidence: Evidence, guess: Array, prior: Prior, rounds: int = MOST_ROUNDS) -> tuple[Array, Array, int]:
-    """Parameters and covariance with each reading as a robust normal one; Gauss–Newton with bounded steps.
+    """Parameters (3,), covariance of the free ones, and rounds, with each reading taken as a robust normal one.
 
     Raises
     ------
     NoAnswer : the search does not settle.
     """
     free = prior.free
-    point = guess.copy()
-    point[2] = point[2] if prior.sd_K > 0.0 else 0.0
-    covariance = np.eye(3)
-    for done in range(1, rounds + 1):
+    start = guess.copy()
+    if prior.sd_K == 0.0:
+        start[2] = 0.0
+
+    def whole(part: Array) -> Array:
+        point = start.copy()
+        point[free] = part
+        return point
+
+    def normal_equations(part: Array) -> tuple[Array, Array]:
+        point = whole(part)
         features = evidence.features(point)
         one = as_normal(evidence, features)
         weight = one.good / one.sd**2 * evidence.counts[evidence.rows]
-        hessian = (one.slope * weight[:, None]).T @ one.slope
+        place = features.start_slope / evidence.start_u_K
+        matrix = (one.slope * weight[:, None]).T @ one.slope + np.outer(place, place)
         gradient = one.slope.T @ (weight * one.miss)
-        hessian[1, 1] += 1.0 / evidence.start_u_K**2
-        gradient[1] += (evidence.start_C - point[1]) / evidence.start_u_K**2
-        hessian[2, 2] += prior.weight
+        gradient += place * (evidence.start_C - features.start_C) / evidence.start_u_K
+        matrix[2, 2] += prior.weight
         gradient[2] -= point[2] * prior.weight
-        inner = hessian[np.ix_(free, free)]
-        scale = np.sqrt(np.diag(inner))
-        if not np.all(np.isfinite(inner)) or np.any(scale == 0.0):
-            break
-        inverse = np.linalg.pinv(inner / np.outer(scale, scale)) / np.outer(scale, scale)
-        step = inverse @ gradient[free]
-        sd = np.sqrt(np.maximum(np.diag(inverse), 1e-300))
-        step *= min(1.0, float(np.min(LARGEST_STEP[free] / np.maximum(np.abs(step), 1e-300))))
-        point[free] += step
-        covariance = inverse
-        if np.max(np.abs(step) / sd) < CONVERGED:
-            return point, covariance, done
-    if not np.all(np.isfinite(point)):
-        raise NoAnswer("The fit does not settle on these readings; check them, the mode and the air temperature.")
-    return point, covariance, rounds
+        return matrix[np.ix_(free, free)], gradient[free]
+
+    settled = gauss_newton(normal_equations, start[free], LARGEST_STEP[free], CONVERGED, rounds)
+    return whole(settled.point), settled.covariance, settled.rounds
 
 
 def solve(evidence: Evidence, guess: Array, prior: Prior) -> Solution:

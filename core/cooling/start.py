@@ -41,6 +41,7 @@ def find_start(evidence: Evidence, later: Evidence, guess: Array, prior: Prior) 
     place = np.flatnonzero((rows < early) & evidence.counts[rows])[::-1]
     slope = one.slope[place][:, prior.free]
     spread = np.diag(one.sd[place] ** 2) + slope @ covariance @ slope.T
+    spread += np.diag(1e-9 * np.diag(spread))
     whitened = np.linalg.solve(np.linalg.cholesky(spread), one.miss[place])
     heard = np.cumsum(np.minimum(whitened**2, CLIP**2))
     count = np.arange(1.0, len(place) + 1.0)
