@@ -181,7 +181,7 @@ def grouped(digits: str) -> str:
 
 def _rounded(value: float, exponent: int) -> Decimal:
     """The value rounded to a multiple of 10^exponent, half to even."""
-    return Decimal(repr(value)).quantize(Decimal(1).scaleb(exponent), ROUND_HALF_EVEN)
+    return Decimal(repr(float(value))).quantize(Decimal(1).scaleb(exponent), ROUND_HALF_EVEN)
 
 
 def _plain(value: Decimal) -> str:
@@ -191,7 +191,7 @@ def _plain(value: Decimal) -> str:
 
 def _last_place(u: float, digits: int) -> int:
     """Exponent of the last digit when u keeps `digits` significant digits after rounding."""
-    exponent = Decimal(repr(u)).adjusted() - digits + 1
+    exponent = Decimal(repr(float(u))).adjusted() - digits + 1
     return exponent + 1 if _rounded(u, exponent).adjusted() > exponent + digits - 1 else exponent
 
 

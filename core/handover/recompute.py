@@ -3,6 +3,7 @@
 from __future__ import annotations
 
 from collections.abc import Sequence
+from math import isfinite
 
 import numpy as np
 
@@ -14,6 +15,8 @@ from core.judgement.answer import Answer
 from core.judgement.judge import judge
 from core.judgement.series import Series, law_of
 
+_LOOK = "hold them against the mode, the resolution and the air temperature of the set-up"
+
 
 def answer_to(
     readings: Readings,
@@ -22,13 +25,19 @@ def answer_to(
     start_s: float | None = None,
     earlier: Sequence[Answer] = (),
 ) -> Answer:
-    """The answer to one run. Raises NoAnswer where its readings cannot give one."""
+    """The answer to one run. Raises NoAnswer where its readings cannot give one.
+
+    Readings that no cooling body gives can take the arithmetic out of its range; that is no answer either."""
     try:
-        return judge(readings, setup, rulings=rulings, start_s=start_s, earlier=earlier)
-    except (ArithmeticError, np.linalg.LinAlgError) as error:
-        raise NoAnswer(
-            f"The fit of these readings breaks down ({error}); check them against the set-up."
-        ) from error
+        with np.errstate(all="ignore"):
+            answer = judge(readings, setup, rulings=rulings, start_s=start_s, earlier=earlier)
+    except BenchError:
+        raise
+    except (ArithmeticError, ValueError, IndexError) as error:  # NumPy's LinAlgError is a ValueError
+        raise NoAnswer(f"The fit of these readings breaks down ({error}); {_LOOK}.") from error
+    if not (isfinite(answer.h_W_m2K) and isfinite(answer.h_u_W_m2K)):
+        raise NoAnswer(f"The fit of these readings ends at no number; {_LOOK}.")
+    return answer
 
 
 def answers_to(session: ExportSession) -> list[Answer | BenchError]:
