@@ -104,7 +104,14 @@ class Model(EventDispatcher):
         self.sessions = tuple(self._records.session_view(kept.session, None) for kept in opened)
 
     def _session_number(self) -> int:
-        return int(self.session.session) if self.session else self.new_session()
+        """The session that takes what a person does now; the invented one stays as it is."""
+        if self.session is None:
+            return self.new_session()
+        if self.session.invented:
+            own = self.new_session()
+            self.notice = _("The invented session stays as it is: a session of your own was begun.")
+            return own
+        return int(self.session.session)
 
     def _refresh(self) -> None:
         if self.session is not None:

@@ -7,7 +7,7 @@ import os
 import time
 from typing import Any
 
-TARGETS_EVERY_S = 0.2
+TARGETS_EVERY_S = 0.1
 
 
 class Trace:
@@ -16,6 +16,7 @@ class Trace:
     def __init__(self, path: str | None = None) -> None:
         self._file = open(path, "a", encoding="utf-8", buffering=1) if path else None  # noqa: PTH123, SIM115
         self._targets: list[dict[str, Any]] = []
+        self._seen: list[dict[str, Any]] = []
 
     @property
     def on(self) -> bool:
@@ -26,11 +27,13 @@ class Trace:
             self._file.write(json.dumps({"t": time.monotonic(), "event": event, **values}) + "\n")
 
     def targets(self, root: Any, height: float) -> None:
-        """What can be touched now, with its text and its rectangle from the top left; written when it changed."""
+        """What can be touched now, with its text and its rectangle from the top left; written once a changed
+        layout has stood still from one look to the next."""
         found = [_target(widget, height) for widget in root.walk() if _touchable(widget)]
-        if found != self._targets:
+        if found == self._seen and found != self._targets:
             self._targets = found
             self("targets", targets=found)
+        self._seen = found
 
 
 def _touchable(widget: Any) -> bool:

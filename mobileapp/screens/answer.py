@@ -8,7 +8,7 @@ from kivy.clock import Clock
 from kivy.properties import BooleanProperty, StringProperty
 
 from core.judgement.answer import Answer
-from mobileapp.figures import clock_time, number, percent, significant, with_uncertainty
+from mobileapp.figures import NO_VALUE, clock_time, number, percent, significant, with_uncertainty
 from mobileapp.navigation import Page
 from mobileapp.trace import trace
 from mobileapp.widgets import badge, basics  # noqa: F401  the .kv of this screen uses them
@@ -49,8 +49,8 @@ class AnswerScreen(Page):
         self.model.bind(session=self._decided)
         self._clear()
         self._decided()
-        self.model.ask_answer(run, self._show, self._refused)
         self._show_truth()
+        self.model.ask_answer(run, self._show, self._refused)
         self._count_down()
         self._countdown = Clock.schedule_interval(self._count_down, 1.0)
 
@@ -111,20 +111,27 @@ class AnswerScreen(Page):
         parts.append(f"τ {significant(answer.time_constant_s, 4)} s")
         parts.append(f"U95 {percent(answer.h_U95_W_m2K / answer.h_W_m2K, 1)}")
         self.side_words = "   ".join(parts)
+        self._show_truth(answer)
         trace("answer", run=self.run, h=answer.h_W_m2K, U95=answer.h_U95_W_m2K, verdict=answer.verdict)
 
     def _refused(self, sentence: str) -> None:
+        self.h_text = NO_VALUE
         self.verdict, self.verdict_text = "none", _("No answer")
         self.reason = say(sentence)
         trace("no answer", run=self.run, sentence=sentence)
 
-    def _show_truth(self) -> None:
+    def _show_truth(self, answer: Answer | None = None) -> None:
         if not self.rehearsal:
             return
         truth = self.model.rehearsal_truth(self.run)
         if truth is None:
             return
         lines = [_("True h was {h} W/(m²·K).").format(h=significant(truth.h_W_m2K, 4))]
+        if answer is not None:
+            off = abs(answer.h_W_m2K - truth.h_W_m2K)
+            inside, outside = _("Yours is {off} away, inside its U95."), _("Yours is {off} away, outside its U95.")
+            where = inside if off <= answer.h_U95_W_m2K else outside
+            lines[0] += " " + where.format(off=percent(off / truth.h_W_m2K, 2))
         if truth.lag_s is not None and truth.jitter_s is not None:
             habit = _("Your taps came {lag} s late on average and scattered by {jitter} s, over {count} taps.")
             lines.append(

@@ -28,11 +28,16 @@ class HomeScreen(Page):
     notice = StringProperty("")
 
     def arrive(self, **_aim: Any) -> None:
-        self.model.bind(session=self._show, sessions=self._show)
+        self.model.bind(session=self._show, sessions=self._show, next_speed=self._show, notice=self._tell)
         self._show()
+        self._tell()
 
     def leave(self) -> None:
-        self.model.unbind(session=self._show, sessions=self._show)
+        self.model.unbind(session=self._show, sessions=self._show, next_speed=self._show, notice=self._tell)
+        self.model.notice = ""
+
+    def _tell(self, *_args: Any) -> None:
+        self.notice = self.model.notice
 
     def _show(self, *_args: Any) -> None:
         session = self.model.session

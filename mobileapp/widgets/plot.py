@@ -70,6 +70,15 @@ class Whisker:
 
 
 @dataclass(frozen=True, slots=True)
+class Note:
+    """A short text beside a point."""
+
+    at: tuple[float, float]
+    text: str
+    colour: str = "ink"
+
+
+@dataclass(frozen=True, slots=True)
 class View:
     """The part of the plane that is shown, in axis units (logarithms on a logarithmic axis)."""
 
@@ -133,7 +142,7 @@ class Plot(Widget):
     # ------------------------------------------------------------------ what is shown
 
     def show(self, *parts: Any, view: tuple[float, float, float, float] | None = None) -> None:
-        """Show bands, curves, whiskers and marks in this order. Without `view` the plot holds them all; a view
+        """Show bands, curves, whiskers, marks and notes in this order. Without `view` the plot holds them all; a view
         that fingers have chosen stays."""
         self._parts = parts
         moved = self.view is not None and self.view != self._home
@@ -156,6 +165,8 @@ class Plot(Widget):
             return [*part.lower, *part.upper]
         if isinstance(part, Whisker):
             return [part.start, part.end]
+        if isinstance(part, Note):
+            return [part.at]
         return list(part.points)
 
     def _usable(self, x: float, y: float) -> bool:
@@ -267,6 +278,11 @@ class Plot(Widget):
             drawing.add(Mesh(vertices=vertices, indices=list(range(len(vertices) // 4)), mode="triangle_strip"))
             return
         drawing.add(Color(*colour))
+        if isinstance(part, Note):
+            texture = self._text(part.text, look.small)
+            at = (sx(part.at[0]) + dp(6), sy(part.at[1]) + dp(3))
+            drawing.add(Rectangle(texture=texture, size=texture.size, pos=at))
+            return
         if isinstance(part, Whisker):
             ends = [sx(part.start[0]), sy(part.start[1]), sx(part.end[0]), sy(part.end[1])]
             drawing.add(SmoothLine(points=ends, width=dp(1.1)))
