@@ -8,8 +8,8 @@ from mobileapp.words import _
 
 SHARES = frozenset(
     {
-        "readings in doubt", "material", "airspeed drift", "start", "expected h", "earlier runs", "radiation share",
-        "stem share", "target uncertainty",
+        "readings in doubt", "material", "airspeed drift", "start", "expected h", "earlier runs",
+        "radiation share", "stem share", "target uncertainty",
     }
 )  # fmt: skip
 COUNTS = frozenset({"number of readings"})

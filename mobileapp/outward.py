@@ -21,15 +21,16 @@ def exported(record: Record, invented: bool, answer: Answer | None) -> ExportRun
     truth = truth_of(state.opened)
     return ExportRun(
         run=str(record.number),
-        kind="demo" if invented else "rehearsal" if record.kind == "rehearsal" else "measured",
+        kind=record.kind,
         setup=record.setup,
         readings=state.readings,
-        note=_decision_note(state.decision),
         invented=invented,
         recorded_at=state.opened.wall_time,
         stamp_source=state.opened.stamp_source,
         rulings=state.rulings,
         start_s=state.start_s,
+        decision=state.decision.decision if state.decision else "",
+        decision_reason=state.decision.reason if state.decision else "",
         answer=answer,
         no_answer="" if answer else "Not fitted yet.",
         true_h_W_m2K=truth.h_W_m2K if truth else None,
@@ -52,10 +53,6 @@ def taken_in(run: ExportRun) -> tuple[RunOpened, Sequence[Event]]:
     if run.start_s is not None:
         events.append(StartMoved(run.start_s))
     events.append(RunEnded(times[-1] if times else 0.0))
+    if run.decision:
+        events.append(Decided(run.decision, run.decision_reason))
     return opened, events
-
-
-def _decision_note(decision: Decided | None) -> str:
-    if decision is None:
-        return ""
-    return decision.decision + (f": {decision.reason}" if decision.reason else "")

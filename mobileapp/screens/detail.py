@@ -98,9 +98,9 @@ class DetailScreen(Page):
     def _show_start(self, answer: Answer) -> None:
         start_s = answer.window_s[0]
         self.start_by_person = answer.fit.start_by == "person"
-        told = _("You set the start of the fit at {time} s.") if self.start_by_person else (
-            _("The fit starts at {time} s, found by the program. Drag the red line to move it.")
-        )  # fmt: skip
+        told = _("The fit starts at {time} s, found by the program. Drag the red line to move it.")
+        if self.start_by_person:
+            told = _("You set the start of the fit at {time} s.")
         self.start_text = told.format(time=number(start_s, 1))
 
     def _show_expected(self, answer: Answer) -> None:
@@ -158,23 +158,24 @@ class DetailScreen(Page):
     def _show_numbers(self, answer: Answer) -> None:
         box = self.ids.numbers
         box.clear_widgets()
-        fit, k = answer.fit, answer.coverage_factor
+        fit = answer.fit
         h_unit = "W/(m²·K)"
+        tau = plus_minus(answer.time_constant_s, answer.time_constant_u_s)
         lines = [
             (_("h, 95 %"), f"{plus_minus(answer.h_W_m2K, answer.h_U95_W_m2K)} {h_unit}"),
             (_("h before radiation and stem are taken off"), f"{number(answer.h_total_W_m2K, 1)} {h_unit}"),
             (_("of it radiation"), f"{number(answer.h_radiation_W_m2K, 2)} {h_unit}"),
-            (_("Time constant, u from the readings"), f"{plus_minus(answer.time_constant_s, answer.time_constant_u_s)} s"),
-            (_("Nusselt number, 95 %"), plus_minus(answer.nusselt, None if answer.nusselt_u is None else k * answer.nusselt_u)),
-            (_("Reynolds number, 95 %"), plus_minus(answer.reynolds, None if answer.reynolds_u is None else k * answer.reynolds_u)),
+            (_("Time constant, u from the readings"), f"{tau} s"),
+            (_("Nusselt number, u"), plus_minus(answer.nusselt, answer.nusselt_u)),
+            (_("Reynolds number, u"), plus_minus(answer.reynolds, answer.reynolds_u)),
             (_("Biot number"), significant(answer.biot, 2)),
             (_("The readings head for"), f"{number(answer.asymptote_C, 2)} °C"),
             (_("Film temperature"), f"{number(answer.film_temperature_C, 1)} °C"),
             (_("Airspeed at the body"), f"{number(answer.velocity_m_s, 2)} m/s"),
             (_("Part of the record used"), f"{number(answer.window_s[0], 1)} – {number(answer.window_s[1], 1)} s"),
             (_("Readings used"), str(sum(fit.used))),
-            (_("Coverage factor k"), number(k, 2)),
-        ]  # fmt: skip
+            (_("Coverage factor k"), number(answer.coverage_factor, 2)),
+        ]
         for name, value in lines:
             box.add_widget(ValueLine(name=name, value=value))
 

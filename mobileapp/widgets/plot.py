@@ -142,8 +142,8 @@ class Plot(Widget):
     # ------------------------------------------------------------------ what is shown
 
     def show(self, *parts: Any, view: tuple[float, float, float, float] | None = None) -> None:
-        """Show bands, curves, whiskers, marks and notes in this order. Without `view` the plot holds them all; a view
-        that fingers have chosen stays."""
+        """Show bands, curves, whiskers, marks and notes in this order. Without `view` the plot holds them all; a
+        view that fingers have chosen stays."""
         self._parts = parts
         moved = self.view is not None and self.view != self._home
         self._home = self._fitting() if view is None else View(*self._axis_pair(*view[:2], *view[2:]))

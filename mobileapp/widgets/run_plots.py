@@ -1,4 +1,4 @@
-"""The two pictures of one run: the cooling curve, and below it on the same time axis what the curve leaves over."""
+"""The two pictures of one run: the cooling curve, and below it on the same time axis what it leaves over."""
 
 from __future__ import annotations
 
@@ -13,6 +13,7 @@ from kivy.uix.boxlayout import BoxLayout
 
 from core.bench.readings import Readings
 from core.bench.setup import Setup
+from core.cooling.observation import bins_of
 from core.judgement.answer import Answer
 from mobileapp.theme import look
 from mobileapp.widgets.plot import Curve, Marks, Plot, View
@@ -137,13 +138,12 @@ class RunPlots(BoxLayout):
 
 
 def _at_the_change(readings: Readings, setup: Setup) -> list[XY]:
-    """The readings as points of the curve. A display that changes to a number does so at that number's edge: half
-    a step above it where it rounds to nearest, a whole step where it cuts."""
+    """The readings as points of the curve: a falling display turns to a number at the upper edge of its bin."""
     points = list(zip(readings.time_s, readings.reading_C, strict=True))
     if setup.recording.mode != "change":
         return points
-    edge_K = setup.thermometer.resolution_K * (1.0 if setup.thermometer.rounding == "down" else 0.5)
-    return points[:1] + [(time_s, reading_C + edge_K) for time_s, reading_C in points[1:]]
+    edges = (float(one) for one in bins_of(readings, setup).upper_C[1:])
+    return points[:1] + list(zip(readings.time_s[1:], edges, strict=True))
 
 
 Builder.load_file(str(Path(__file__).with_suffix(".kv")))
