@@ -1,9 +1,9 @@
 """Where the fit begins: after the fan has run up, heat has spread in the body, and the sensor has caught up.
 
 The later part of the record is fitted first and followed back towards the start. The fit begins at the first row
-from which on the early rows agree with that curve, within their own scatter and the curve's uncertainty. Sound
-runs keep every row but one time in a thousand, so that choosing the start costs them nothing; a single late tap
-is not taken for a late fan, as no row counts for more than three standard deviations."""
+from which on no stretch of early rows is off that curve, beyond their own scatter and the curve's uncertainty.
+Sound runs keep every row but a few times in a thousand, so that choosing the start costs them nothing; a single
+late tap is not taken for a late fan, as no row counts for more than three standard deviations."""
 
 from __future__ import annotations
 
@@ -19,6 +19,7 @@ Array = NDArray[np.float64]
 LATER_SHARE = 0.35  # of the rows, tried as the latest start
 FEWEST_LATER = 12
 CLIP = 3.0  # standard deviations
+STRETCHES = (1, 2, 3, 5, 8, 13, 21)  # rows taken together
 SURE = 3.1  # standard normal quantile of one in a thousand
 
 
@@ -39,17 +40,41 @@ def find_start(evidence: Evidence, later: Evidence, guess: Array, prior: Prior) 
     one = as_normal(evidence, evidence.features(point))
     rows = evidence.rows
     place = np.flatnonzero((rows < early) & evidence.counts[rows])[::-1]
-    slope = one.slope[place][:, prior.free]
-    spread = np.diag(one.sd[place] ** 2) + slope @ covariance @ slope.T
-    spread += np.diag(1e-9 * np.diag(spread))
-    whitened = np.linalg.solve(np.linalg.cholesky(spread), one.miss[place])
-    heard = np.cumsum(np.minimum(whitened**2, CLIP**2))
-    count = np.arange(1.0, len(place) + 1.0)
-    agrees = heard <= _chi_square_limit(count)
-    if agrees[-1]:
+    squares = _surprises(one.miss[place], one.sd[place], one.slope[place][:, prior.free], covariance)[::-1]
+    first = _first_sound(squares)
+    if first == 0:
         return 0
-    last = int(np.flatnonzero(agrees)[-1]) if np.any(agrees) else -1
-    return early if last < 0 else int(rows[place[last]])
+    return early if first == len(place) else int(rows[place[::-1][first]])
+
+
+def _surprises(miss: Array, sd: Array, slope: Array, covariance: Array) -> Array:
+    """Clipped squares of how far each row lies off what is known before it, going back in time.
+
+    A Kalman update of the parameters with each row that is not itself a surprise."""
+    shift, spread = np.zeros(slope.shape[1]), covariance.copy()
+    squares = np.empty(len(miss))
+    for k in range(len(miss)):
+        gain = spread @ slope[k]
+        variance = sd[k] ** 2 + slope[k] @ gain
+        off = miss[k] - slope[k] @ shift
+        squares[k] = min(off * off / variance, CLIP**2)
+        if squares[k] < CLIP**2:
+            shift = shift + gain * (off / variance)
+            spread = spread - np.outer(gain, gain) / variance
+    return squares
+
+
+def _first_sound(squares: Array) -> int:
+    """The first row from which on no stretch of rows is off; `squares` are clipped squares in order of time."""
+    first = 0
+    while first < len(squares):
+        heard = np.cumsum(squares[first:])
+        stretches = np.array([count for count in STRETCHES if count <= len(heard)])
+        off = np.any(heard[stretches - 1] > _chi_square_limit(stretches.astype(np.float64)))
+        if not off and not (first > 0 and squares[first] >= CLIP**2):
+            break
+        first += 1
+    return first
 
 
 def latest_start(rows: int) -> int:
