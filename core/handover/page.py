@@ -21,6 +21,8 @@ th { text-align: left; font-weight: 600; color: var(--soft); border-bottom: 1px 
 th, td { padding: .28rem .9rem .28rem 0; vertical-align: top; }
 td { border-bottom: 1px solid var(--line); }
 td.from { color: var(--soft); font: .74rem/1.7 ui-monospace, "DejaVu Sans Mono", monospace; white-space: nowrap; }
+small { color: var(--soft); display: block; font-size: .74rem; } small.at { font-family: ui-monospace, monospace; }
+.halves { display: grid; grid-template-columns: 1fr 1fr; gap: 0 1.5rem; }
 figure { margin: 1rem 0; } figure img { width: 100%; height: auto; display: block; }
 figcaption { color: var(--soft); font-size: .82rem; }
 .number { font-size: 1.5rem; font-weight: 600; } .number sup { font-size: .62em; }
@@ -30,10 +32,12 @@ figcaption { color: var(--soft); font-size: .82rem; }
 .invented { border: 1.5px dashed var(--ink); padding: .5rem .9rem; margin: 1rem 0; font-weight: 600; }
 code { font: .85em ui-monospace, "DejaVu Sans Mono", monospace; }
 a { color: var(--blue); }
+@media (max-width: 40rem) { .halves { grid-template-columns: 1fr; } }
 @media print {
-  body { font-size: 10.5pt; max-width: none; padding: 0; } h2 { break-before: page; }
+  .halves { grid-template-columns: 1fr 1fr !important; }
+  html { font-size: 11px; } body { font-size: 1rem; max-width: none; padding: 0; } h2 { break-before: page; }
   h2.flow { break-before: auto; }
-  figure, tr { break-inside: avoid; } h3 { break-after: avoid; } a { color: inherit; text-decoration: none; }
+  figure, tr { break-inside: avoid; } figure img { width: 84%; } h3 { break-after: avoid; } a { color: inherit; text-decoration: none; }
   @page { margin: 18mm 16mm; }
 }
 """
@@ -72,6 +76,12 @@ def table(head: Sequence[str], rows: Sequence[Sequence[str]]) -> str:
         for row in rows
     )
     return f'<div class="scroll"><table><thead><tr>{top}</tr></thead><tbody>\n{body}</tbody></table></div>\n'
+
+
+def halves(head: Sequence[str], rows: Sequence[Sequence[str]]) -> str:
+    """A long table in two halves beside each other."""
+    middle = (len(rows) + 1) // 2
+    return f'<div class="halves">{table(head, rows[:middle])}{table(head, rows[middle:])}</div>\n'
 
 
 def figure(png: bytes, about: str, caption: str) -> str:

@@ -9,7 +9,7 @@ from core.bench.units import in_digits, with_u
 from core.errors import BenchError
 from core.handover.columns import cell, setup_columns
 from core.handover.figures import budget_figure, curve_figure
-from core.handover.page import figure, mark, table, text
+from core.handover.page import figure, halves, mark, table, text
 from core.handover.session import ExportRun
 from core.handover.session_files import READINGS, RUNS
 from core.judgement.answer import Answer
@@ -146,12 +146,11 @@ def _checks(answer: Answer) -> str:
             text(one.name),
             text(f"{in_digits(one.value)} {one.unit}".rstrip()) if one.value is not None else "—",
             text(f"{in_digits(one.limit)} {one.unit}".rstrip()) if one.limit is not None else "—",
-            text(one.advice),
-            text(one.source),
+            f"{text(one.advice)}<small>limit: {text(one.source)}</small>",
         ]
         for one in answer.checks
     ]
-    return table(["outcome", "check", "found", "limit", "what it means", "source of the limit"], rows)
+    return table(["outcome", "check", "found", "limit", "what it means"], rows)
 
 
 def _expected(answer: Answer) -> str:
@@ -183,12 +182,8 @@ def _setup_table(run: ExportRun, stored: Stored) -> str:
     for name, (section, key, column) in setup_columns().items():
         value = getattr(getattr(run.setup, section), key)
         if value not in (None, ()):
+            meaning = text(descriptions(section)[key].meaning)
             written = value if isinstance(value, str) else cell(value)
-            rows.append(
-                [
-                    text(descriptions(section)[key].meaning),
-                    text(f"{written} {column.unit}".rstrip()),
-                    stored.at(name),
-                ]
-            )
-    return "<h3>The bench</h3>\n" + table(["", "value", "from"], rows)
+            place = f'<small class="at">{stored.at(name)}</small>'
+            rows.append([meaning + place, text(f"{written} {column.unit}".rstrip())])
+    return "<h3>The bench</h3>\n" + halves(["", "value"], rows)
