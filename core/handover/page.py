@@ -37,7 +37,8 @@ a { color: var(--blue); }
   .halves { grid-template-columns: 1fr 1fr !important; }
   html { font-size: 11px; } body { font-size: 1rem; max-width: none; padding: 0; } h2 { break-before: page; }
   h2.flow { break-before: auto; }
-  figure, tr { break-inside: avoid; } figure img { width: 84%; } h3 { break-after: avoid; } a { color: inherit; text-decoration: none; }
+  figure, tr { break-inside: avoid; } figure img { width: 84%; }
+  h3 { break-after: avoid; } a { color: inherit; text-decoration: none; }
   @page { margin: 18mm 16mm; }
 }
 """
