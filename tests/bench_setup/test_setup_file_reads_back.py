@@ -1,6 +1,7 @@
 """A set-up goes to TOML and back without losing a digit, and the contract's own example is read as it stands."""
 
 from dataclasses import MISSING, fields, replace
+from pathlib import Path
 
 import pytest
 from hypothesis import given, settings
@@ -157,6 +158,13 @@ def test_the_example_of_the_contract_is_read(tmp_path):
     assert isinstance(setup.air.pressure_Pa, float)
     assert (setup.flow.row, setup.flow.rows) == (3, 5)
     assert setup.recording.beat_s == 5.0
+
+
+def test_the_example_in_the_documents_is_read():
+    """The example that a refusal points to stands in DEVELOPERS.md and is read as it is."""
+    documents = Path(__file__).parents[2].joinpath("DEVELOPERS.md").read_text(encoding="utf-8")
+    example = documents.split("```toml")[1].split("```")[0]
+    assert setup_from_text(example, "DEVELOPERS.md") == setup_from_text(EXAMPLE, "example.toml")
 
 
 def test_the_least_that_is_required_is_enough():
