@@ -1,8 +1,8 @@
 """Eigenvalues and centre amplitudes of transient conduction against handbook and library.
 
 One-term coefficients ζ₁ and C₁: Incropera et al., Fundamentals of Heat and Mass Transfer, table 5.1 (Bi with the
-half thickness of the wall, the radius of cylinder and sphere). Bessel functions: SciPy. A short cylinder: the product
-of the two one-dimensional solutions, against the project's own finite volumes."""
+half thickness of the wall, the radius of cylinder and sphere). Bessel functions: SciPy. A short cylinder: the
+product of the two one-dimensional solutions, against the project's own finite volumes."""
 
 import numpy as np
 import pytest

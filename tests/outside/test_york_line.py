@@ -15,7 +15,7 @@ WEIGHT_Y = np.array([1.0, 1.8, 4.0, 8.0, 20.0, 20.0, 70.0, 70.0, 100.0, 500.0])
 
 
 def test_pearsons_data_with_yorks_weights_give_the_published_line():
-    """Intercept 5.47991, slope −0.480533, standard errors 0.294971 and 0.0579850 (maximum likelihood: 0.2919, 0.0576)."""
+    """Intercept 5.47991, slope −0.480533, errors 0.294971 and 0.0579850 (maximum likelihood: 0.2919, 0.0576)."""
     line = fit_line(X, Y, np.diag(np.concatenate([1 / WEIGHT_X, 1 / WEIGHT_Y])))
     assert line.intercept == pytest.approx(5.47991022, abs=2e-6)
     assert line.slope == pytest.approx(-0.480533407, abs=2e-7)
