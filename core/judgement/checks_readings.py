@@ -14,6 +14,7 @@ from core.judgement.patterns import (
     refresh_grid,
     repeated_share,
     residual_pattern,
+    run_chance,
 )
 
 PATTERN_PROBABILITY = 1e-3  # a sound run shows such a pattern once in 1000; 2 % of sound runs over all checks
@@ -21,8 +22,8 @@ ASYMPTOTE_SIGMAS = 3.5
 REFRESH_MISMATCH = 0.15  # the likelihood hardly feels a refresh that is 15 % off
 BEAT_SHARE = 0.7
 GAP_GROWTH = 1.3
-DOUBTFUL_FEWEST = 3  # a careful hand is late once or twice in a run
-START_SHARE = 0.05
+DOUBTFUL_FEWEST = 2  # a careful hand is late once in a run
+START_SHARE = 0.02  # two changes of a 1 K display; sound runs keep their start
 
 
 def span(evidence: Evidence) -> Finding:
@@ -102,27 +103,31 @@ def doubt(evidence: Evidence) -> Finding:
 
 
 def start(evidence: Evidence) -> Finding:
-    """How much of the record was left out at the start."""
+    """How much of the record was left out at the start, together with first rows that the fit holds for late."""
     fit, times, limit = evidence.fit, evidence.readings.time_s, evidence.setup.limits.trimmed_share
-    trimmed_s = fit.window_s[0] - times[0]
-    share = trimmed_s / (times[-1] - times[0])
+    out = {one.row for one in fit.left_out}
+    first = next((row for row in range(1, len(times)) if row not in out), len(times) - 1)
+    settled_s = (times[first] if first > 1 else fit.window_s[0]) - times[0]
+    share = settled_s / (times[-1] - times[0])
     if fit.start_by == "person":
         return Finding("good", share, limit, f"You set the start at {fit.window_s[0]:.1f} s.")
     if share <= START_SHARE:
         return Finding("good", share, START_SHARE, "The record follows the curve from its start.")
     advice = (
-        f"The first {trimmed_s:.0f} s do not follow the curve and were left out: have the fan at speed before the "
+        f"The first {settled_s:.0f} s do not follow the curve and were left out: have the fan at speed before the "
         "first reading, and check the sensor's lag."
     )
     return Finding("again", share, limit, advice) if share > limit else Finding("look", share, START_SHARE, advice)
 
 
 def pattern(evidence: Evidence) -> Finding:
-    """Whether the residuals still hold a pattern."""
-    found = residual_pattern([one for one in evidence.fit.residual_score if one is not None])
+    """Whether the residuals still hold a pattern, or the readings in doubt come in a row."""
+    fit = evidence.fit
+    found = residual_pattern([one for one in fit.residual_score if one is not None])
     if found is None:
         return unknown("Too few readings to tell.", PATTERN_PROBABILITY)
-    chance = found.probability
+    doubted = [one.row for one in fit.left_out if one.cause not in {"start", "dropped"}]
+    chance = min(found.probability, run_chance(doubted, len(evidence.readings)))
     if chance > PATTERN_PROBABILITY:
         return Finding("good", chance, PATTERN_PROBABILITY, "The residuals scatter as they should.")
     advice = (
@@ -174,7 +179,7 @@ START = Rule("start", "", f"{COMMON_PRACTICE}: with the fan at speed no start ne
 PATTERN = Rule(
     "residual pattern",
     "",
-    "smooth test (Neyman 1937) and lag-one autocorrelation (Box and Jenkins) of the scores, chance 1 in 1000",
+    "smooth test (Neyman 1937), lag-one autocorrelation (Box and Jenkins) and run of doubts, chance 1 in 1000",
     pattern,
 )
 ASYMPTOTE = Rule(

@@ -132,6 +132,7 @@ def _U95_rel(
         air_u_K=setup.air.temperature_u_K,
         time_constant_s=time_constant_s,
         body_mean_C=body_C,
+        body_felt_C=body_C,
         conduction=conduction,
         readings_dof=max(1.0, promised.readings - 3.0),
     )

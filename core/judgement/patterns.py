@@ -63,6 +63,29 @@ def residual_pattern(scores: Sequence[float]) -> Pattern | None:
     return Pattern(chi_square_tail(strength, _WAVES), erfc(abs(r) * sqrt(n / 2.0)))
 
 
+def run_chance(doubted: Sequence[int], readings: int, fault_rate: float = 0.05) -> float:
+    """Chance that single slips of the hand put as many readings in doubt in a row as were found.
+
+    A run of k among n readings has a chance of at most n·q^k, q being the rate of slips (union bound).
+
+    Parameters
+    ----------
+    doubted : rows of the readings in doubt, in order [-]
+    readings : number of readings [-]
+    fault_rate : share of readings at which a hand slips; one in twenty, common practice [-]
+
+    Returns
+    -------
+    float, chance [-]
+    """
+    longest = length = 0
+    before = -2
+    for row in doubted:
+        length = length + 1 if row == before + 1 else 1
+        longest, before = max(longest, length), row
+    return min(1.0, readings * fault_rate**longest)
+
+
 def beat_share(time_s: Sequence[float]) -> float:
     """Share of the intervals between readings within 10 % of the median interval or a multiple of it: near 1 for
     readings on a beat, far below for changes of a display that slows down."""

@@ -5,7 +5,7 @@ The readings fix the decay rate of the body's temperature; h follows from it as
 
     h = U / (1 − U·ℓ / (s·k)) − G/A − h_r,   U = κ·m·c(T_b) / (τ·A)
 
-with the time constant τ, heat capacity m·c at the body's mean temperature, swept area A, stem loss G, radiation
+with the time constant τ, heat capacity m·c at the body's temperature, swept area A, stem loss G, radiation
 h_r, conductivity k, half thickness ℓ and s = 3, 4, 5 for a wall, a long cylinder, a sphere (first eigenvalue to
 second order in Bi; only where the model has conduction inside). The constant κ, close to 1, makes the relation
 meet the fit exactly at the nominal values."""
@@ -15,6 +15,8 @@ from __future__ import annotations
 from collections.abc import Mapping
 from dataclasses import dataclass, replace
 from typing import Any
+
+import numpy as np
 
 from core.bench.air import Air, air_properties
 from core.bench.body import ThermalBody, thermal_body
@@ -44,8 +46,8 @@ BODY_KEYS = {
 class Anchor:
     """What the relation needs of a fit, made or predicted: h and its standard uncertainty from readings alone, its
     change with the measured air and with the tap's delay, the standard uncertainty of the air temperature, the
-    time constant, the body's mean temperature, whether conduction inside is in the model, and the degrees of
-    freedom of the readings."""
+    time constant, the body's mean temperature and the one that the fit feels, whether conduction inside is in the
+    model, and the degrees of freedom of the readings."""
 
     h_W_m2K: float
     readings_u_W_m2K: float
@@ -54,6 +56,7 @@ class Anchor:
     air_u_K: float
     time_constant_s: float
     body_mean_C: float
+    body_felt_C: float
     conduction: bool
     readings_dof: float
 
@@ -73,9 +76,38 @@ def anchor_of(fit: CoolingFit, setup: Setup) -> Anchor:
         air_u_K=air_u_K,
         time_constant_s=fit.time_constant_s,
         body_mean_C=fit.body_mean_C,
+        body_felt_C=felt_temperature_C(fit, setup),
         conduction=fit.model != "lumped",
         readings_dof=max(1.0, sum(fit.used) - len(fit.parameters)),
     )
+
+
+def felt_temperature_C(fit: CoolingFit, setup: Setup) -> float:
+    """The body's temperature at which a part of h that changes along the cooling, such as radiation, enters the
+    fitted h [°C].
+
+    A coefficient h_r(T) adds R(t) = ∫ h_r dt to H·t, the cooling's logarithm times the heat capacity per area.
+    The fit takes of R what looks like more h, a weighted regression on t beside a constant and the asymptote's own
+    effect H·τ/(T − T∞), which the measured air holds. The weights are those of the readings: even over the
+    temperature for taps at each change, (T − T∞)² over time for readings on a beat, each as sure in temperature;
+    together they make up the fit's uncertainty at a known asymptote."""
+    time, body_C = np.array(fit.curve_time_s), np.array(fit.curve_C)
+    inside = (time >= fit.window_s[0]) & (time <= fit.window_s[1])
+    time, body_C = time[inside], body_C[inside]
+    excess = body_C - fit.asymptote_C
+    if len(time) < 4 or float(excess.min()) <= 0.0 or float(np.ptp(body_C)) == 0.0:
+        return fit.body_mean_C
+    walls_C = fit.asymptote_C if setup.air.surroundings_C is None else setup.air.surroundings_C
+    coefficient = np.array([radiation_W_m2K(1.0, float(one), fit.asymptote_C, walls_C) for one in body_C])
+    added = np.concatenate([[0.0], np.cumsum(0.5 * (coefficient[1:] + coefficient[:-1]) * np.diff(time))])
+    weight = np.abs(np.gradient(body_C, time)) if setup.recording.mode == "change" else excess**2
+    centred = time - np.average(time, weights=weight)
+    weight /= fit.h_u_fixed_air_W_m2K**2 * np.sum(weight * centred**2)
+    columns = np.stack([centred, np.ones(len(time)), fit.h_total_W_m2K * fit.time_constant_s / excess], axis=1)
+    normal = (columns * weight[:, np.newaxis]).T @ columns
+    normal[2, 2] += max(setup.air.temperature_u_K, 1e-6) ** -2
+    felt = float(np.linalg.solve(normal, columns.T @ (weight * added))[0])
+    return float(np.interp(felt, np.sort(coefficient), np.sort(body_C)))
 
 
 def mid_air_C(setup: Setup) -> float:
@@ -104,13 +136,14 @@ class State:
     setup: Setup
     body: ThermalBody
     capacity_J_K: float
-    body_C: float
+    body_mean_C: float
+    body_felt_C: float
     air_C: float
     surroundings_C: float
 
     @property
     def film_C(self) -> float:
-        return 0.5 * (self.body_C + self.air_C)
+        return 0.5 * (self.body_mean_C + self.air_C)
 
 
 @dataclass(frozen=True, slots=True)
@@ -119,7 +152,7 @@ class Relation:
 
     setup: Setup
     anchor: Anchor
-    nominal_heat_J_kgK: float  # specific heat at the body's mean temperature
+    nominal_heat_J_kgK: float  # specific heat at the body's felt temperature
     kappa: float
 
     def outputs(self, values: Mapping[str, float]) -> tuple[float, ...]:
@@ -147,7 +180,7 @@ def relate(setup: Setup, anchor: Anchor) -> Relation:
     wanted = anchor.h_W_m2K + _losses_W_m2K(state)
     through = wanted / (1.0 + wanted * _inside_m2K_W(state.body, anchor, {}))
     kappa = through * anchor.time_constant_s * state.body.area_m2 / state.capacity_J_K
-    return Relation(setup, anchor, state.body.specific_heat_J_kgK(anchor.body_mean_C), kappa)
+    return Relation(setup, anchor, state.body.specific_heat_J_kgK(anchor.body_felt_C), kappa)
 
 
 def state_at(setup: Setup, anchor: Anchor, values: Mapping[str, float]) -> State:
@@ -169,9 +202,11 @@ def state_at(setup: Setup, anchor: Anchor, values: Mapping[str, float]) -> State
     offset, gain = values.get("thermometer offset", 0.0), values.get("thermometer gain", 0.0)
     nominal_air_C = mid_air_C(setup)
     air_C = values.get("air temperature", nominal_air_C) - offset
-    body_C = anchor.body_mean_C - offset - gain * (anchor.body_mean_C - nominal_air_C)
+    mean_C, felt_C = (
+        one - offset - gain * (one - nominal_air_C) for one in (anchor.body_mean_C, anchor.body_felt_C)
+    )
     surroundings_C = air_C if setup.air.surroundings_C is None else setup.air.surroundings_C
-    return State(moved, thermal, thermal.capacity_J_K(body_C), body_C, air_C, surroundings_C)
+    return State(moved, thermal, thermal.capacity_J_K(felt_C), mean_C, felt_C, air_C, surroundings_C)
 
 
 def _flow_at(setup: Setup, moved: Setup, velocity_m_s: float) -> Flow:
@@ -191,7 +226,7 @@ def _flow_at(setup: Setup, moved: Setup, velocity_m_s: float) -> Flow:
 def _losses_W_m2K(state: State) -> float:
     """Radiation and stem loss, as a coefficient on the swept area."""
     emissivity = state.setup.body.emissivity
-    radiated = radiation_W_m2K(emissivity, state.body_C, state.air_C, state.surroundings_C)
+    radiated = radiation_W_m2K(emissivity, state.body_felt_C, state.air_C, state.surroundings_C)
     return radiated + state.setup.body.stem_loss_W_K / state.body.area_m2
 
 
