@@ -212,10 +212,11 @@ def state_at(setup: Setup, anchor: Anchor, values: Mapping[str, float]) -> State
 def _flow_at(setup: Setup, moved: Setup, velocity_m_s: float) -> Flow:
     """The flow with another undisturbed velocity; where it comes from a dynamic pressure, air of another density
     than the nominal one changes it too."""
-    nominal, now = undisturbed_velocity(setup).value_m_s, undisturbed_velocity(moved).value_m_s
+    if setup.flow.dynamic_pressure_Pa is not None and velocity_m_s > 0.0:
+        velocity_m_s *= undisturbed_velocity(moved).value_m_s / undisturbed_velocity(setup).value_m_s
     return replace(
         setup.flow,
-        velocity_m_s=velocity_m_s * (now / nominal if nominal > 0.0 else 1.0),
+        velocity_m_s=velocity_m_s,
         velocity_end_m_s=None,
         velocity_readings_m_s=(),
         dynamic_pressure_Pa=None,

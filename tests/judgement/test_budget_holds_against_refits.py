@@ -70,8 +70,8 @@ def test_a_thermometer_that_reads_high_as_the_air_does_hardly_moves_h():
 
 
 def test_linear_and_monte_carlo_agree_within_2_percent_on_the_demo_session():
-    """u and U95 of h, Nu and Re of each demo run; 20 000 draws are good to 0.5 %."""
-    for one in demo_runs():
+    """u and U95 of h, Nu and Re, the fastest, the slowest and the aluminium run, by 20 000 draws."""
+    for one in demo_runs()[::4] + demo_runs()[-1:]:
         answer = judge(one.readings, one.setup)
         budget = budget_of(answer.fit, one.setup)
         drawn = monte_carlo_of(answer.fit, one.setup, seed=17)
