@@ -5,7 +5,9 @@
 import numpy as np
 import pytest
 
+from core.cooling.simulator import Truth, simulate
 from core.judgement.judge import judge
+from tests.judgement.benches import bench
 from tests.judgement.faults import FAULTS, WRITTEN, earlier, sound
 
 
@@ -35,3 +37,12 @@ def test_sound_runs_are_kept():
 def test_the_earlier_run_was_sound_itself():
     assert earlier().verdict == "keep"
     assert earlier().setup == WRITTEN
+
+
+def test_a_run_in_still_air_is_judged_without_a_reynolds_number():
+    """It measures the stem loss: no alarm for large losses, none for a coarse h."""
+    still = bench(body={"stem_loss_W_K": 0.02}, recording={"kind": "still-air"}, flow={"velocity_m_s": None})
+    answer = judge(simulate(Truth(still, 8.0, end_C=45.0), 1), still)
+    assert (answer.reynolds, answer.nusselt, answer.velocity_m_s) == (None, None, None)
+    assert answer.verdict == "keep", answer.reason
+    assert answer.fit.stem_loss_W_K == pytest.approx(0.02, abs=0.002)
