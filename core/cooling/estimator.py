@@ -3,17 +3,16 @@
 from __future__ import annotations
 
 from collections.abc import Sequence
-from math import log
 
 import numpy as np
 
 from core.bench.readings import Readings, Ruling
 from core.bench.setup import Setup
-from core.cooling.asymptote import prior_of
 from core.cooling.fit import CoolingFit
-from core.cooling.gather import FEWEST, check, first_guess, gather
+from core.cooling.gather import FEWEST, check, first_guess, gather, warm_guess
 from core.cooling.model import cooling_model
 from core.cooling.outcome import outcome
+from core.cooling.prior import prior_of
 from core.cooling.solve import solve
 from core.cooling.start import find_start, latest_start
 from core.errors import NoAnswer
@@ -47,10 +46,7 @@ def fit_cooling(
     model = cooling_model(setup, readings.time_s[-1])
     prior = prior_of(setup)
     whole = gather(readings, setup, model, 0, rulings)
-    if warm is not None:
-        guess = np.array([log(warm.h_W_m2K), warm.start_C, warm.asymptote_shift_K])
-    else:
-        guess = first_guess(whole)
+    guess = first_guess(whole) if warm is None else warm_guess(warm, model)
     if start_s is not None:
         start_row, by = int(np.searchsorted(np.array(readings.time_s), start_s - 1e-9)), "person"
     else:

@@ -10,6 +10,7 @@ from numpy.typing import NDArray
 
 from core.bench.readings import Readings, Ruling
 from core.bench.setup import Setup
+from core.cooling.fit import CoolingFit
 from core.cooling.likelihood import Evidence
 from core.cooling.model import CoolingModel
 from core.cooling.observation import bins_of, blur_of
@@ -97,6 +98,11 @@ def first_guess(evidence: Evidence) -> Array:
     rate = max(-float(slope), 1e-7)
     start = air[0] + exp(float(np.average(y, weights=w)) + rate * centre)
     body = model.body
+    if model.natural_W_m2K > 0.0:
+        watts = rate * body.capacity_J_K(float(np.mean(middle)))
+        excess = float(np.mean(theta[usable]))
+        known = model.radiation_W_m2K(float(np.mean(middle[usable]))) + model.natural_W_m2K * excess**0.25
+        return np.array([0.0, start, max(watts - known * body.area_m2, 0.0)])
     total = rate * body.capacity_J_K(float(np.mean(middle))) / body.area_m2
     losses = model.stem_loss_W_K / body.area_m2 + model.radiation_W_m2K(float(np.mean(middle[usable])))
     h = max(total - losses, 0.05 * total)
@@ -106,3 +112,11 @@ def first_guess(evidence: Evidence) -> Array:
             break
         h = max(total / float(modes.share[0]) - losses, 0.05 * total)
     return np.array([log(h), start, 0.0])
+
+
+def warm_guess(fit: CoolingFit, model: CoolingModel) -> Array:
+    """Parameters of an earlier fit of the same run."""
+    if model.natural_W_m2K > 0.0:
+        scale = fit.h_W_m2K / (model.natural_W_m2K * (fit.body_mean_C - fit.asymptote_C) ** 0.25)
+        return np.array([log(scale), fit.start_C, fit.stem_loss_W_K or 0.0])
+    return np.array([log(fit.h_W_m2K), fit.start_C, fit.asymptote_shift_K])

@@ -27,6 +27,7 @@ ZERO_C_K = 273.15
 TOLERANCE = 1e-11
 ROUNDS = 80
 PARAMETERS = ("ln h", "start", "asymptote")
+STILL_PARAMETERS = ("ln scale", "start", "stem loss")
 STEPS = np.array([1e-4, 1e-3, 1e-3])  # for central differences in the parameters
 LARGEST_Z = 30.0
 MEAN_EXCESS = 0.45  # of the first excess over the air: about the mean over a run
@@ -98,7 +99,9 @@ class Curve:
 class CoolingModel:
     """The bench as the physics needs it; parameters are (ln h, T at the start, asymptote offset).
 
-    T at the start is that of the lasting mode at the sensor, followed back to time 0."""
+    T at the start is that of the lasting mode at the sensor, followed back to time 0. With `natural_W_m2K`, the
+    coefficient of natural convection at an excess of 1 K, above 0, the run is one in still air: h goes with the
+    fourth root of the excess, and the parameters are (ln scale of h, T at the start, stem loss [W/K])."""
 
     body: ThermalBody
     stem_loss_W_K: float
@@ -108,24 +111,30 @@ class CoolingModel:
     walls_C: float
     lag_s: float
     factors: tuple[Factor, ...]
+    natural_W_m2K: float = 0.0
 
     def curve(self, parameters: Array, length_s: float) -> Curve:
         """Temperatures over `length_s` from the start of the record for parameter sets of shape (sets, 3).
 
         A lagging sensor is taken as at the body's own temperature at the start."""
-        h, start_C, offset = np.exp(parameters[:, 0]), parameters[:, 1], parameters[:, 2]
+        h, start_C = np.exp(parameters[:, 0]), parameters[:, 1]
+        still = self.natural_W_m2K > 0.0
+        offset = np.zeros(len(h)) if still else parameters[:, 2]
         time = (chebyshev.nodes() + 1.0)[:, None] * (length_s / 2.0)
         air = self.air_C + offset + self.air_rate_K_s * time
         theta0 = np.maximum(start_C - air[0], 1e-3)
         integrate = chebyshev.integration() * (length_s / 2.0)
-        modes = self.modes(h, start_C, air[0])
+        modes = None if still else self.modes(h, start_C, air[0])
         inside = 1.0 if modes is None else modes.share
-        conductance = h * self.body.area_m2 + self.stem_loss_W_K
+        first = h * self.natural_W_m2K * theta0**0.25 if still else h
+        conductance = first * self.body.area_m2 + (parameters[:, 2] if still else self.stem_loss_W_K)
         z = conductance / self.body.capacity_J_K(float(np.mean(start_C))) * time
         walls = self.walls_C + offset if self.walls_C == self.air_C else self.walls_C
         for _ in range(ROUNDS):
             theta = theta0 * np.exp(-np.clip(z, -LARGEST_Z, LARGEST_Z))
             body = air + theta
+            if still:
+                conductance = self._still_W_K(h, theta, parameters[:, 2])
             rate = (
                 inside * (conductance * theta + self._radiation_W(body, walls)) / self.body.capacity_J_K_at(body)
             )
@@ -136,6 +145,8 @@ class CoolingModel:
                 break
         theta = theta0 * np.exp(-np.clip(z, -LARGEST_Z, LARGEST_Z))
         body = air + theta
+        if still:
+            conductance = self._still_W_K(h, theta, parameters[:, 2])
         rate = -inside * (conductance * theta + self._radiation_W(body, walls)) / self.body.capacity_J_K_at(body)
         early = modes if modes is not None and len(modes.amplitude) else None
         if self.lag_s == 0.0:
@@ -146,6 +157,10 @@ class CoolingModel:
         return Curve(
             length_s, steady, body, derivative @ steady, fading, self.lag_s, air[0], self.air_rate_K_s, early
         )
+
+    def _still_W_K(self, scale: Array, excess_K: Array, stem_W_K: Array) -> Array:
+        result: Array = scale * self.natural_W_m2K * excess_K**0.25 * self.body.area_m2 + stem_W_K
+        return result
 
     def modes(self, h_W_m2K: Array, start_C: Array, air_C: Array) -> Modes | None:
         """Conduction inside the body for sets of h [W/(m²·K)]; None where it would change nothing that counts."""
@@ -188,4 +203,16 @@ def cooling_model(setup: Setup, record_s: float) -> CoolingModel:
         walls_C=air.temperature_C if air.surroundings_C is None else air.surroundings_C,
         lag_s=setup.thermometer.lag_s,
         factors=factors_of(setup.body),
+        natural_W_m2K=natural_W_m2K(setup) if setup.recording.kind == "still-air" else 0.0,
     )
+
+
+def natural_W_m2K(setup: Setup) -> float:
+    """Coefficient of natural convection in air at an excess of 1 K [W/(m²·K)]; it goes with θ^(1/4).
+
+    Simplified laws for laminar flow at atmospheric pressure: horizontal cylinder and sphere 1.32 (θ/D)^(1/4),
+    other bodies 1.42 (θ/L)^(1/4) with their height (McAdams, Heat Transmission, 3rd ed. 1954, ch. 7; Holman, Heat
+    Transfer, table 7-2, from memory). Valid for 10⁴ < Gr Pr < 10⁹."""
+    body = thermal_body(setup.body)
+    factor = 1.42 if body.shape == "block" else 1.32
+    return float(factor * body.across_m**-0.25)

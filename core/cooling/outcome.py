@@ -9,11 +9,11 @@ import numpy as np
 from numpy.typing import NDArray
 
 from core.bench.readings import Readings, Ruling
-from core.cooling.asymptote import Prior
 from core.cooling.diagnosis import doubtful, scores
 from core.cooling.fit import CoolingFit, LeftOut
 from core.cooling.likelihood import Evidence, as_normal, log_likelihood
-from core.cooling.model import PARAMETERS, CoolingModel
+from core.cooling.model import PARAMETERS, STILL_PARAMETERS, CoolingModel
+from core.cooling.prior import Prior
 from core.cooling.solve import Solution
 
 Array = NDArray[np.float64]
@@ -34,14 +34,15 @@ def outcome(
 ) -> CoolingFit:
     """Everything that the readings say, in one frozen value."""
     model, body = evidence.model, evidence.model.body
-    ln_h, start_C, offset = (float(one) for one in solution.parameters)
-    h = exp(ln_h)
+    still = model.natural_W_m2K > 0.0
+    ln_h, start_C, last = (float(one) for one in solution.parameters)
+    offset = 0.0 if still else last
     features = evidence.features(solution.parameters)
     covariance = solution.covariance
-    var_h, var_air = covariance[0, 0], covariance[2, 2]
+    var_h, var_air = covariance[0, 0], 0.0 if still else covariance[2, 2]
     per_air = covariance[0, 2] / var_air if var_air > 0.0 else _per_air(evidence, solution)
     fixed = max(var_h - (covariance[0, 2] ** 2 / var_air if var_air > 0.0 else 0.0), 0.0)
-    measured = _per_air(evidence, solution) if var_air == 0.0 else covariance[0, 2] * prior.weight
+    measured = per_air if var_air == 0.0 else covariance[0, 2] * prior.air_weight
     window = (readings.time_s[start_row], readings.time_s[-1])
     grid = np.linspace(0.0, readings.time_s[-1], CURVE_POINTS)
     curve = features.curve.at(grid)[:, 0]
@@ -50,9 +51,10 @@ def outcome(
     mid = (window[0] + window[1]) / 2.0
     asymptote = model.air_C + offset + model.air_rate_K_s * mid
     radiation = model.radiation_W_m2K(mean_C, offset)
-    stem = model.stem_loss_W_K / body.area_m2
+    h = exp(ln_h) * (model.natural_W_m2K * (mean_C - asymptote) ** 0.25 if still else 1.0)
+    stem = (last if still else model.stem_loss_W_K) / body.area_m2
     total = h + radiation + stem
-    inside = _conduction_share(model, solution)
+    inside = 1.0 if still else _conduction_share(model, solution)
     tau = body.capacity_J_K(mean_C) / (inside * total * body.area_m2)
     named = doubtful(evidence, features, readings)
     left_out = _left_out(start_row, start_by, readings, rulings, named)
@@ -86,7 +88,7 @@ def outcome(
         h_per_lag_W_m2Ks=h * _per_lag(evidence, solution, prior),
         phase_s=None,
         covariance=tuple(tuple(float(x) for x in row) for row in covariance),
-        parameters=PARAMETERS,
+        parameters=STILL_PARAMETERS if still else PARAMETERS,
         model=_model_name(model, inside),
         biot=total * body.volume_m3 / body.area_m2 / body.conductivity_W_mK,
         window_s=window,
@@ -102,6 +104,8 @@ def outcome(
         iterations=solution.rounds,
         profile_interval_W_m2K=_interval(solution) if profile else None,
         body_mean_C=mean_C,
+        stem_loss_W_K=last if still else None,
+        stem_loss_u_W_K=sqrt(covariance[2, 2]) if still else None,
     )
 
 
@@ -124,11 +128,13 @@ def _per_lag(evidence: Evidence, solution: Solution, prior: Prior) -> float:
     """d ln h for 1 s more in the mean tap delay: the shift of all taps, through the normal equations."""
     if evidence.mode == "beat":
         return 0.0
-    return _response(evidence, solution, prior.free, np.full(len(evidence.rows), -1.0))
+    return _response(evidence, solution, list(prior.free), np.full(len(evidence.rows), -1.0))
 
 
 def _per_air(evidence: Evidence, solution: Solution) -> float:
-    """d ln h for 1 K in an asymptote that is taken as known."""
+    """d ln h for 1 K in an asymptote that is taken as known; not worked out for a run in still air."""
+    if evidence.model.natural_W_m2K > 0.0:
+        return 0.0
     slope = as_normal(evidence, evidence.features(solution.parameters)).slope[:, 2]
     return _response(evidence, solution, [0, 1], -slope)
 

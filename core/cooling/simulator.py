@@ -30,8 +30,9 @@ class Truth:
     """A bench as it really is, which may differ from the set-up that a person wrote.
 
     `h_W_m2K` is the coefficient at the velocity before the run; while the velocity creeps by `creep_rel` over the
-    run, h follows with the power `exponent`. The fan runs up with the time constant `fan_run_up_s` after
-    `fan_late_s`. `thermometer_offset_K` is how much the body's thermometer reads above the air's."""
+    run, h follows with the power `exponent`. In a still-air run it is that of natural convection at the start, and
+    goes with θ^(1/4). The fan runs up with the time constant `fan_run_up_s` after `fan_late_s`.
+    `thermometer_offset_K` is how much the body's thermometer reads above the air's."""
 
     setup: Setup
     h_W_m2K: float
@@ -86,6 +87,7 @@ def cool(truth: Truth) -> Course:
     if whole * body.half_thickness_m / body.conductivity_W_mK > CONDUCTING:
         return _conducting(truth, decay, tau)
     length = tau * log(max(truth.start_C - air0, 1.0) / max(truth.end_C - air0, 0.5)) + truth.fan_late_s
+    still = setup.recording.kind == "still-air"
     step = min(tau / STEPS_PER_TIME_CONSTANT, lag / 5.0 if lag > 0.0 else 1e9)
 
     def coefficient(time_s: float) -> float:
@@ -102,7 +104,8 @@ def cool(truth: Truth) -> Course:
     def rate(time_s: float, body_C: float, sensor_C: float) -> tuple[float, float]:
         air = air0 + (air1 - air0) * min(time_s / length, 1.5)
         walls = air0 if setup.air.surroundings_C is None else setup.air.surroundings_C
-        watts = (coefficient(time_s) * area + setup.body.stem_loss_W_K) * (body_C - air)
+        natural = max((body_C - air) / (truth.start_C - air0), 0.0) ** 0.25 if still else 1.0
+        watts = (coefficient(time_s) * natural * area + setup.body.stem_loss_W_K) * (body_C - air)
         watts += (
             setup.body.emissivity
             * STEFAN_BOLTZMANN_W_M2K4

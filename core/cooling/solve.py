@@ -7,22 +7,21 @@ from dataclasses import dataclass
 import numpy as np
 from numpy.typing import NDArray
 
-from core.cooling.asymptote import Prior
 from core.cooling.likelihood import Evidence, as_normal, log_likelihood
 from core.cooling.optimiser import gauss_newton
 from core.cooling.posterior import adapt
+from core.cooling.prior import Prior
 
 Array = NDArray[np.float64]
 
 MOST_ROUNDS = 60
 CONVERGED = 0.03  # of a standard deviation
-LARGEST_STEP = np.array([0.4, 10.0, 3.0])
 POINTS = 256
 
 
 @dataclass(frozen=True, slots=True)
 class Solution:
-    """Parameters (ln h, T at the start, asymptote offset) with covariance, and the weighted points behind them."""
+    """Parameters of the model with covariance, and the weighted points behind them."""
 
     parameters: Array
     covariance: Array
@@ -39,9 +38,9 @@ def search(evidence: Evidence, guess: Array, prior: Prior, rounds: int = MOST_RO
     ------
     NoAnswer : the search does not settle.
     """
-    free = prior.free
+    free = list(prior.free)
     start = guess.copy()
-    if prior.sd_K == 0.0:
+    if 2 not in free:
         start[2] = 0.0
 
     def whole(part: Array) -> Array:
@@ -58,18 +57,18 @@ def search(evidence: Evidence, guess: Array, prior: Prior, rounds: int = MOST_RO
         matrix = (one.slope * weight[:, None]).T @ one.slope + np.outer(place, place)
         gradient = one.slope.T @ (weight * one.miss)
         gradient += place * (evidence.start_C - features.start_C) / evidence.start_u_K
-        matrix[2, 2] += prior.weight
-        gradient[2] -= point[2] * prior.weight
+        matrix += np.diag(prior.weight)
+        gradient -= point * prior.weight
         return matrix[np.ix_(free, free)], gradient[free]
 
-    settled = gauss_newton(normal_equations, start[free], LARGEST_STEP[free], CONVERGED, rounds)
+    settled = gauss_newton(normal_equations, start[free], prior.largest_step[free], CONVERGED, rounds)
     return whole(settled.point), settled.covariance, settled.rounds
 
 
 def solve(evidence: Evidence, guess: Array, prior: Prior) -> Solution:
     """Posterior mean and covariance of the parameters of a window."""
     point, covariance, rounds = search(evidence, guess, prior)
-    free = prior.free
+    free = list(prior.free)
     features = evidence.features(point)
 
     def widened(shift: Array) -> Array:
@@ -79,8 +78,7 @@ def solve(evidence: Evidence, guess: Array, prior: Prior) -> Solution:
 
     def log_density(shift: Array) -> Array:
         whole = widened(shift)
-        offset = point[2] + whole[:, 2]
-        logs: Array = log_likelihood(evidence, features, whole) - 0.5 * prior.weight * offset**2
+        logs: Array = log_likelihood(evidence, features, whole) - 0.5 * (point + whole) ** 2 @ prior.weight
         return logs
 
     posterior = adapt(log_density, np.zeros(len(free)), covariance, POINTS)

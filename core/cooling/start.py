@@ -10,8 +10,8 @@ from __future__ import annotations
 import numpy as np
 from numpy.typing import NDArray
 
-from core.cooling.asymptote import Prior
 from core.cooling.likelihood import Evidence, as_normal
+from core.cooling.prior import Prior
 from core.cooling.solve import search
 
 Array = NDArray[np.float64]
@@ -40,7 +40,7 @@ def find_start(evidence: Evidence, later: Evidence, guess: Array, prior: Prior) 
     one = as_normal(evidence, evidence.features(point))
     rows = evidence.rows
     place = np.flatnonzero((rows < early) & evidence.counts[rows])[::-1]
-    squares = _surprises(one.miss[place], one.sd[place], one.slope[place][:, prior.free], covariance)[::-1]
+    squares = _surprises(one.miss[place], one.sd[place], one.slope[place][:, list(prior.free)], covariance)[::-1]
     first = _first_sound(squares)
     if first == 0:
         return 0
