@@ -16,6 +16,7 @@ SHORTEST_TAU_S = 20.0
 FIRST_FALL_K = 25.0
 """Before a first fall is known, every fall up to this one is thought possible."""
 
+SHORTEST_BEAT_S = 0.5
 LOWEST_C, HIGHEST_C = -50.0, 200.0
 TOLERANCE_K = 1e-9
 MOST_CANDIDATES = 4
@@ -61,6 +62,7 @@ def complete(
     if not inside:
         turn_K = 10.0 ** len(digits) * _unit(resolution_K)
         wide = _numbers(digits, before_C - most_K - turn_K, before_C - least_K + turn_K, resolution_K)
+        wide = wide or _numbers(digits, before_C - turn_K, before_C + turn_K, resolution_K)
         return Completion(_nearest(wide, likely_C)[:2], certain=False)
     return Completion(_nearest(inside, likely_C)[:MOST_CANDIDATES], certain=False)
 
@@ -81,7 +83,7 @@ def _fall_K(
     past_s, now_s = rows[-1].stamp_s - rows[-2].stamp_s, stamp_s - rows[-1].stamp_s
     fall_K = rows[-2].reading_C - rows[-1].reading_C
     likely_K = max(fall_K, 0.0) * now_s / past_s
-    if refresh_s >= past_s:
+    if past_s < max(SHORTEST_BEAT_S, 2.0 * refresh_s):
         return -2.0 * resolution_K, likely_K, max(FIRST_FALL_K, 2.0 * likely_K)
     decay = -math.expm1(-now_s / SHORTEST_TAU_S) / math.expm1(past_s / SHORTEST_TAU_S) * past_s / now_s
     slowest = decay * max(fall_K - resolution_K, 0.0) / (past_s + refresh_s) * max(now_s - refresh_s, 0.0)
@@ -94,6 +96,8 @@ def _numbers(digits: str, low_C: float, high_C: float, resolution_K: float) -> t
     unit = Decimal(repr(_unit(resolution_K)))
     step = int(Decimal(repr(float(resolution_K))) / unit)
     turn, wanted = 10 ** len(digits), int(digits)
+    if high_C < LOWEST_C or low_C > HIGHEST_C:
+        return ()
     low = Decimal(repr(max(low_C, LOWEST_C) - TOLERANCE_K)) / unit
     high = Decimal(repr(min(high_C, HIGHEST_C) + TOLERANCE_K)) / unit
     sizes = range(wanted, int(max(abs(low), abs(high))) + 1, turn)

@@ -97,3 +97,11 @@ def test_nearest_finds_the_number_itself(tenths, count, off):
     found = nearest(last_digits(reading_C, 0.1, count), near_C, 0.1)
     assert found is not None
     assert abs(found - near_C) <= abs(reading_C - near_C) + 1e-9
+
+
+@given(st.floats(1e-6, 400.0), st.floats(1e-6, 4000.0), st.integers(-500, 2000), st.integers(-500, 2000))
+def test_readings_that_make_no_sense_are_asked_at_once(past_s, now_s, one, other):
+    """Whatever stands before, there is an answer or a question, never a long search."""
+    rows = [Row(0.0, one / 10, 1), Row(past_s, other / 10, 2)]
+    answer = complete("7", rows, past_s + now_s, 0.1, 0.5)
+    assert len(answer.candidates_C) == 1 if answer.certain else answer.candidates_C
