@@ -10,6 +10,7 @@ from core.judgement.answer import Answer
 from core.judgement.law_bands import LawBand, law_bands
 from core.judgement.series import Series
 from mobileapp.figures import number, percent, significant, with_uncertainty
+from mobileapp.gathering import with_answers
 from mobileapp.judged import law_label, plus_minus
 from mobileapp.navigation import Page
 from mobileapp.widgets import basics, plot  # noqa: F401  the .kv of this screen uses them
@@ -50,19 +51,7 @@ class SeriesScreen(Page):
                 "apart, make a law worth having; a speed measured twice shows how well the bench repeats."
             )
             return
-        self._waiting = {run.run for run in runs}
-        for run in runs:
-            self.model.ask_answer(run.run, self._one_more(run.run), self._one_more(run.run))
-
-    def _one_more(self, run: str) -> Any:
-        """Called with each answer or refusal; the law is asked for once all are there."""
-
-        def come(_answer: Any) -> None:
-            self._waiting.discard(run)
-            if not self._waiting:
-                self.model.ask_series(self._show, self._refused)
-
-        return come
+        with_answers(self.model, lambda: self.model.ask_series(self._show, self._refused))
 
     def _refused(self, sentence: str) -> None:
         self.has_law = False

@@ -328,7 +328,6 @@ def rss_MB():
 def throw_malformed(server, count, seed, threads=16):
     """Throw so many malformed requests; the statuses heard, and the memory before and after."""
     rng = random.Random(seed)
-    raws = [malformed(rng, server) for _ in range(count)]
     heard: dict[int, int] = {}
     lock = threading.Lock()
 
@@ -343,10 +342,12 @@ def throw_malformed(server, count, seed, threads=16):
         with lock:
             heard[status] = heard.get(status, 0) + 1
 
+    batch = count // 10
     with ThreadPoolExecutor(threads) as many:
-        list(many.map(throw, raws[: count // 10]))  # warm: threads and buffers exist by now
-        before = rss_MB()
-        list(many.map(throw, raws[count // 10 :]))
+        for i in range(10):
+            list(many.map(throw, [malformed(rng, server) for _ in range(batch)]))
+            if i == 0:
+                before = rss_MB()  # warm: threads and buffers exist by now
     return heard, before, rss_MB()
 
 
