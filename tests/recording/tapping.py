@@ -1,8 +1,8 @@
 """A process of its own that taps into a journal and tells on its output what was confirmed to it.
 
 python -m tests.recording.tapping FOLDER fast           taps until it is killed
-python -m tests.recording.tapping FOLDER fault NAME     taps, meets a failing disk (faulty_disk.c), taps on, is gone
-python -m tests.recording.tapping FOLDER fill BALLAST   taps till the disk is full, deletes BALLAST, taps on, is gone
+python -m tests.recording.tapping FOLDER fault NAME     taps, meets a failing disk (faulty_disk.c), taps on
+python -m tests.recording.tapping FOLDER fill BALLAST   taps till the disk is full, deletes BALLAST, taps on
 """
 
 import itertools
