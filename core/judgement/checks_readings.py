@@ -6,7 +6,7 @@ from __future__ import annotations
 
 from math import hypot, log
 
-from core.judgement.evidence import COMMON_PRACTICE, Evidence, Finding, Rule, beyond, unknown
+from core.judgement.evidence import COMMON_PRACTICE, Evidence, Finding, Rule, unknown
 from core.judgement.patterns import (
     beat_share,
     display_step,
@@ -56,11 +56,11 @@ def recording_mode(evidence: Evidence) -> Finding:
         if repeats == 0.0 and (regular <= 0.9 or growth >= GAP_GROWTH):
             return Finding("good", regular, None, "The readings come as the display changes.")
         advice = "The readings look like a fixed beat, not like changes of the display: set the mode to beat."
-        return Finding("again", regular, 0.9, advice)
+        return Finding("look", regular, 0.9, advice)
     if regular >= BEAT_SHARE and (growth <= GAP_GROWTH or repeats > 0.0 or regular >= 0.95):
         return Finding("good", regular, BEAT_SHARE, "The readings come on a fixed beat.")
     advice = "The readings look like changes of the display, not like a fixed beat: set the mode to change."
-    return Finding("again", regular, BEAT_SHARE, advice)
+    return Finding("look", regular, BEAT_SHARE, advice)
 
 
 def display(evidence: Evidence) -> Finding:
@@ -138,20 +138,23 @@ def pattern(evidence: Evidence) -> Finding:
 
 
 def asymptote(evidence: Evidence) -> Finding:
-    """The temperature that the readings alone head for, against the measured air."""
+    """The temperature that the readings alone head for, against the measured air.
+
+    It says that something is off, and not what, so it asks for the run again only where h moves by more than the
+    wanted uncertainty between the two temperatures."""
     if evidence.free_air_K is None:
         return unknown("The readings say nothing of the air temperature.")
     free, u = evidence.free_air_K
     limit = ASYMPTOTE_SIGMAS * hypot(u, evidence.setup.air.temperature_u_K)
-    outcome = beyond(abs(free), limit)
-    if outcome == "good":
+    if abs(free) <= limit:
         return Finding("good", free, limit, "The readings head for the measured air temperature.")
     side = "above" if free > 0.0 else "below"
     advice = (
         f"The readings head for {abs(free):.2f} K {side} the measured air: check the air temperature, the "
         "display's rounding, the emissivity of the surface, and whether the airspeed held."
     )
-    return Finding(outcome, free, limit, advice)
+    at_stake = abs(free * evidence.fit.h_per_air_W_m2K2 / evidence.fit.h_W_m2K)
+    return Finding("again" if at_stake > evidence.setup.limits.target_U95_rel else "look", free, limit, advice)
 
 
 MODE = Rule(

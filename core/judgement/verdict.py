@@ -6,23 +6,23 @@ from collections.abc import Sequence
 
 from core.judgement import checks_bench as bench
 from core.judgement import checks_readings as readings
-from core.judgement.answer import Check, Verdict
+from core.judgement.answer import Check, Outcome, Verdict
 from core.judgement.evidence import Evidence, Rule
 
-# In order of weight: the first of the worst gives the reason. What makes other checks meaningless comes first.
+# What a corrected set-up puts right, without another run: while one of these speaks, the others may only echo it.
+SETTINGS: tuple[Rule, ...] = (readings.MODE, readings.DISPLAY, readings.REFRESH, bench.MATERIAL)
+
+# In order of weight: a cause comes before what it may cause.
 RULES: tuple[Rule, ...] = (
-    readings.MODE,
-    readings.DISPLAY,
+    *SETTINGS,
     readings.SPAN,
     readings.COUNT,
-    readings.DOUBT,
-    bench.MATERIAL,
     bench.AIRSPEED_DRIFT,
     bench.AIR_DRIFT,
-    readings.REFRESH,
     readings.START,
     readings.ASYMPTOTE,
     readings.PATTERN,
+    readings.DOUBT,
     bench.EARLIER,
     bench.EXPECTED,
     bench.MODEL,
@@ -32,8 +32,8 @@ RULES: tuple[Rule, ...] = (
     bench.TARGET,
 )
 
-_WORST = ("again", "look", "good")
-_WORD: dict[str, Verdict] = {"good": "keep", "look": "look", "again": "again"}
+_SETTINGS = frozenset(rule.name for rule in SETTINGS)
+_WORDS: tuple[tuple[Outcome, Verdict], ...] = (("again", "again"), ("look", "look"))
 
 
 def run_checks(evidence: Evidence) -> tuple[Check, ...]:
@@ -42,9 +42,15 @@ def run_checks(evidence: Evidence) -> tuple[Check, ...]:
 
 
 def conclude(checks: Sequence[Check]) -> tuple[Verdict, str]:
-    """The verdict is the worst outcome; the reason is the advice of the first check that has it."""
-    for outcome in _WORST:
+    """The verdict and the one sentence that matters most.
+
+    A setting that does not fit the readings comes first: `look`, as correcting it judges the same readings anew.
+    Otherwise the verdict is the worst outcome, and the reason the advice of the weightiest check that has it."""
+    for check in checks:
+        if check.name in _SETTINGS and check.outcome != "good":
+            return "look", check.advice
+    for outcome, verdict in _WORDS:
         for check in checks:
             if check.outcome == outcome:
-                return _WORD[outcome], check.advice if outcome != "good" else "Every check is good: keep the run."
-    return "keep", "There was nothing to check."
+                return verdict, check.advice
+    return "keep", "Every check is good: keep the run."

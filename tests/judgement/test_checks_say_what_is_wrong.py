@@ -68,9 +68,9 @@ def test_a_sound_run_is_kept_and_every_check_has_a_source_and_a_sentence():
 
 LATE = tuple(LeftOut(row, "late", "Late.", "program") for row in (5, 20, 41))
 CASES = {
-    "the mode set to change for readings on a beat": ("recording mode", "again", {"readings": beats()}),
+    "the mode set to change for readings on a beat": ("recording mode", "look", {"readings": beats()}),
     "the mode set to beat for changes": (
-        "recording mode", "again", {"setup": bench(recording={"mode": "beat"})}),
+        "recording mode", "look", {"setup": bench(recording={"mode": "beat"})}),
     "a display of 1 K set as 0.1 K": ("display step", "look", {"setup": bench(thermometer={"resolution_K": 0.1})}),
     "a display of 0.1 K set as 1 K": (
         "display step", "look", {"readings": change_taps(resolution_K=0.1)}),
@@ -85,7 +85,8 @@ CASES = {
     "a start left out by the program": ("start", "look", {"fit": {"window_s": (30.0, 300.0)}}),
     "a third of the record left out": ("start", "again", {"fit": {"window_s": (110.0, 300.0)}}),
     "an asymptote above the air": (
-        "asymptote", "again", {"free_air_K": (0.5, 0.05)}),
+        "asymptote", "look", {"free_air_K": (0.5, 0.05)}),
+    "an asymptote so far off that h hangs on it": ("asymptote", "again", {"free_air_K": (3.0, 0.1)}),
     "residuals in a slow wave": (
         "residual pattern", "again", {"fit": {"residual_score": tuple(2 * np.sin(np.arange(58) / 8))}}),
     "residuals that alternate": (
@@ -97,7 +98,7 @@ CASES = {
     "a thick stem": ("stem share", "again", {"stem_share": 0.5}),
     "hardly any flow": ("mixed convection", "look", {"richardson": 0.3}),
     "a lumped model for a thick body": ("Biot number", "look", {"fit": {"biot": 0.2}}),
-    "a mass that is not brass": ("material", "again", {"mass_ratio": 0.32}),
+    "a mass that is not brass": ("material", "look", {"mass_ratio": 0.32}),
     "h far off the published band": ("expected h", "look", {"fit": {"h_W_m2K": 105.0}}),
     "h off an earlier run": ("earlier runs", "look", {"earlier": (Earlier(84.0, 0.3),)}),
     "a poor budget": ("target uncertainty", "look", {"h_U95_rel": 0.09}),
@@ -110,12 +111,19 @@ def test_the_check_that_should_speaks(case):
     assert outcomes(evidence(**changes))[name] == outcome
 
 
-def test_the_reason_is_the_advice_of_the_weightiest_of_the_worst():
-    """A wrong mode makes all else meaningless, so it speaks first; a poor budget speaks when all else is well."""
-    both = run_checks(evidence(readings=beats(), h_U95_rel=0.2))
-    verdict, reason = conclude(both)
-    assert verdict == "again"
+def test_a_wrong_setting_is_the_reason_before_all_that_it_may_cause():
+    """Readings on a beat set as changes: correct the set-up first, whatever else speaks."""
+    verdict, reason = conclude(run_checks(evidence(readings=beats(), h_U95_rel=0.2, stem_share=0.9)))
+    assert verdict == "look"
     assert "set the mode to beat" in reason
+
+
+def test_the_reason_is_the_advice_of_the_weightiest_of_the_worst():
+    """A stalled fan is worse than a poor budget; a poor budget speaks when all else is well."""
+    stalled = bench(flow={"velocity_end_m_s": 5.0})
+    verdict, reason = conclude(run_checks(evidence(setup=stalled, h_U95_rel=0.2)))
+    assert verdict == "again"
+    assert "lock the damper" in reason
     verdict, reason = conclude(run_checks(evidence(h_U95_rel=0.2)))
     assert verdict == "look"
     assert "± 20.0 %" in reason
