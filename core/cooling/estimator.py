@@ -11,11 +11,15 @@ from core.bench.setup import Setup
 from core.cooling.fit import CoolingFit
 from core.cooling.gather import FEWEST, check, first_guess, gather, warm_guess
 from core.cooling.model import cooling_model
+from core.cooling.optimiser import NOT_SETTLED
 from core.cooling.outcome import outcome
 from core.cooling.prior import prior_of
-from core.cooling.solve import solve
+from core.cooling.solve import Solution, solve
 from core.cooling.start import find_start, latest_start
 from core.errors import NoAnswer
+
+LARGEST_LOG = 12.0  # of h [W/(m²·K)]: no air stream comes near
+LARGEST_DEVIATION = 1.0  # of ln h
 
 
 def fit_cooling(
@@ -47,15 +51,35 @@ def fit_cooling(
     prior = prior_of(setup)
     whole = gather(readings, setup, model, 0, rulings)
     guess = first_guess(whole) if warm is None else warm_guess(warm, model)
-    if start_s is not None:
-        start_row, by = int(np.searchsorted(np.array(readings.time_s), start_s - 1e-9)), "person"
-    else:
-        later = gather(readings, setup, model, latest_start(len(readings)), rulings)
-        start_row, by = find_start(whole, later, guess, prior), "program"
-    evidence = gather(readings, setup, model, start_row, rulings)
-    if np.count_nonzero(evidence.counts) < FEWEST:
+    try:
+        if start_s is not None:
+            start_row, by = int(np.searchsorted(np.array(readings.time_s), start_s - 1e-9)), "person"
+        else:
+            later = gather(readings, setup, model, latest_start(len(readings)), rulings)
+            start_row, by = find_start(whole, later, guess, prior), "program"
+        evidence = gather(readings, setup, model, start_row, rulings)
+        if np.count_nonzero(evidence.counts) < FEWEST:
+            raise NoAnswer(
+                f"Only {np.count_nonzero(evidence.counts)} readings are left in the fit, and it needs {FEWEST}: "
+                "move its start earlier, or keep more readings."
+            )
+        solution = solve(evidence, guess, prior)
+        _refuse_senseless(solution)
+        fit = outcome(readings, evidence, solution, prior, start_row, by, rulings, profile)
+    except np.linalg.LinAlgError as fault:
+        raise NoAnswer(NOT_SETTLED) from fault
+    if sum(fit.used) < FEWEST:
         raise NoAnswer(
-            f"Only {np.count_nonzero(evidence.counts)} readings are left in the fit, and it needs {FEWEST}: "
-            "move its start earlier, or keep more readings."
+            f"Only {sum(fit.used)} of {len(readings)} readings lie on one cooling curve, and {FEWEST} are needed; "
+            "check the readings, the recording mode and the display's settings."
         )
-    return outcome(readings, evidence, solve(evidence, guess, prior), prior, start_row, by, rulings, profile)
+    return fit
+
+
+def _refuse_senseless(solution: Solution) -> None:
+    """Refuse what no readings of a cooling body could have led to."""
+    deviation = np.sqrt(np.diag(solution.covariance))
+    if not np.all(np.isfinite(solution.parameters)) or not np.all(np.isfinite(deviation)):
+        raise NoAnswer(NOT_SETTLED)
+    if abs(solution.parameters[0]) > LARGEST_LOG or deviation[0] > LARGEST_DEVIATION:
+        raise NoAnswer("These readings hardly tell how fast the body cools; go on recording, or check them.")

@@ -12,6 +12,8 @@ from core.errors import NoAnswer
 
 Array = NDArray[np.float64]
 
+NOT_SETTLED = "The fit does not settle on these readings; check them, the mode and the air temperature."
+
 
 @dataclass(frozen=True, slots=True)
 class Settled:
@@ -49,9 +51,7 @@ def gauss_newton(
         matrix, gradient = normal_equations(point)
         scale = np.sqrt(np.diag(matrix))
         if not np.all(np.isfinite(matrix)) or not np.all(np.isfinite(gradient)) or np.any(scale == 0.0):
-            raise NoAnswer(
-                "The fit does not settle on these readings; check them, the mode and the air temperature."
-            )
+            raise NoAnswer(NOT_SETTLED)
         covariance = np.linalg.pinv(matrix / np.outer(scale, scale)) / np.outer(scale, scale)
         step = covariance @ gradient
         deviation = np.sqrt(np.maximum(np.diag(covariance), 1e-300))
