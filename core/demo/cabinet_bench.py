@@ -1,8 +1,9 @@
 """The demo session, made by the project's own simulator with a seed: nobody measured it.
 
 A small maker of fruit-drying cabinets wants to know how fast its tube bank warms the air. A brass rod stands in
-the third of five staggered rows; four airspeeds, the second of them twice, a run in which the damper creeps, and one
-with an aluminium rod. The true law of this invented bank, Nu = C·Re^m·Pr^(1/3) with the values below, is recorded with each run."""
+the third of five staggered rows; four airspeeds, the second of them twice, a run in which the damper creeps, and
+one with an aluminium rod. The true law of this invented bank, Nu = C·Re^m·Pr^(1/3) with the values below, is
+recorded with each run."""
 
 from __future__ import annotations
 
