@@ -192,7 +192,7 @@ def preview(text: str, mapping: Mapping, mode: str, name: str, rows: int = 8) ->
 def guess_mapping(text: str) -> Mapping:
     """A likely mapping: the delimiter, decimal mark and columns under which most lines are a time that grows and a
     number. What cannot be told apart (°F without a heading, say) keeps its default; look at the preview."""
-    best, most = Mapping(), 0
+    best, most = Mapping(), (0, 0)
     lines = re.split(r"\r\n|\r|\n", text)[:_LOOKED_AT]
     for delimiter in DELIMITERS:
         for decimal in (".", ",") if delimiter != "," else (".",):
@@ -202,8 +202,8 @@ def guess_mapping(text: str) -> Mapping:
     return best
 
 
-def _guess_columns(lines: Sequence[str], mapping: Mapping) -> tuple[Mapping, int] | None:
-    """The mapping with its columns, and how many lines it reads."""
+def _guess_columns(lines: Sequence[str], mapping: Mapping) -> tuple[Mapping, tuple[int, int]] | None:
+    """The mapping with its columns, and how much it reads: lines, and numbers in one of them."""
     mark = DELIMITERS[mapping.delimiter]
     rows = [[one.strip().strip('"') for one in line.split(mark)] for line in lines]
     typical = [row for row in rows if _holds_run(row, mapping)]
@@ -235,7 +235,7 @@ def _guess_columns(lines: Sequence[str], mapping: Mapping) -> tuple[Mapping, int
             reading_column=reading + 1,
             unit="F" if re.search(r"°\s*f|\bf\b|_f\b|fahrenheit", title) else "C",
         ),
-        len(typical),
+        (len(typical), len(numbers)),
     )
 
 

@@ -11,6 +11,7 @@ from mobileapp.device.ports import Device
 from mobileapp.device.screen import WindowScreen
 from mobileapp.device.sound import find_sounds
 from mobileapp.device.stamps import best_source
+from mobileapp.words import later
 
 
 def on_android() -> bool:
@@ -23,9 +24,9 @@ def find_device(data: Path) -> Device:
     sounds = find_sounds()
     missing = []
     if not haptics.available:
-        missing.append("This device does not vibrate: taps are confirmed by light and sound.")
+        missing.append(later("This device does not vibrate: taps are confirmed by light and sound."))
     if not sounds.available:
-        missing.append("No sound device was found: taps and beats are shown by light only.")
+        missing.append(later("No sound device was found: taps and beats are shown by light only."))
     return Device(
         clock=SystemClock(),
         stamps=best_source(on_android()),

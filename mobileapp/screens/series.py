@@ -47,8 +47,9 @@ class SeriesScreen(Page):
         runs = [run for run in self.model.session.runs if not run.open] if self.model.session else []
         if not runs:
             self.trouble = _(
-                "The law Nu = C·Re^m·Pr^⅓ appears here after runs at two airspeeds. Three or four speeds, well "
-                "apart, make a law worth having; a speed measured twice shows how well the bench repeats."
+                "The law Nu = C·Re[sup]m[/sup]·Pr[sup]⅓[/sup] appears here after runs at two airspeeds. Three or "
+                "four speeds, well apart, make a law worth having; a speed measured twice shows how well the "
+                "bench repeats."
             )
             return
         with_answers(self.model, lambda: self.model.ask_series(self._show, self._refused))
@@ -130,7 +131,7 @@ class SeriesScreen(Page):
         if groups:
             columns = [
                 Column(_("m/s"), 0.6, speeds),
-                Column(_("run"), 0.5, names, numeric=False),
+                Column(_("run"), 0.5, names),
                 Column(_("h, W/(m²·K)"), 1.6, values),
                 Column(_("off the mean, %"), 1.2, off),
             ]
@@ -192,8 +193,8 @@ class SeriesScreen(Page):
             parts.append(Whisker((x - 2 * run.reynolds_u, y), (x + 2 * run.reynolds_u, y), "ember"))
             parts.append(Whisker((x, y - 2 * run.nusselt_u), (x, y + 2 * run.nusselt_u), "ember"))
         parts.append(Marks(list(zip(re, nu, strict=True)), "ember", "dot", 4.5))
-        notes = [band for band in self._bands if band.correlation in self._shown_bands]
-        parts += [Note((b.reynolds[2], b.nusselt[2]), law_label(b.correlation), "soft") for b in notes]
+        named = [band for band in self._bands if band.correlation in self._shown_bands]
+        parts += [_note(band, 3 + 9 * i) for i, band in enumerate(named)]
         self.ids.picture.show(*parts, view=(low, high, min(reach) / 1.05, max(reach) * 1.05))
 
     @staticmethod
@@ -208,3 +209,8 @@ class SeriesScreen(Page):
 
     def open_run(self, run: str) -> None:
         self.go("detail", run=run)
+
+
+def _note(band: LawBand, at: int) -> Note:
+    """The band's name above its upper edge."""
+    return Note((band.reynolds[at], band.nusselt[at] * (1 + band.band_rel)), law_label(band.correlation), "soft")

@@ -147,3 +147,11 @@ def test_the_command_writes_readings_and_says_how_it_read(tmp_path, capsys):
     assert main(["import", str(tmp_path / "log.csv"), "--to", str(tmp_path / "B.csv"), *words]) == 0
     assert (tmp_path / "A.csv").read_bytes() == (tmp_path / "B.csv").read_bytes()
     assert read_readings(tmp_path / "A.csv") == Readings((0.0, 5.0, 10.0, 15.0), (90.0, 88.5, 87.0, 85.6))
+
+
+def test_a_decimal_comma_is_found_beside_a_column_of_whole_numbers():
+    """A second column without a comma (here humidity) must not pass for the reading."""
+    log = "Date;Time;Temp;RH\n10.03.2026;09:12:00;88,4;41\n10.03.2026;09:12:05;84,9;41\n10.03.2026;09:12:10;81,6;41"
+    found = guess_mapping(log)
+    assert (found.decimal, found.reading_column) == (",", 3)
+    assert readings_from_log(log, found, "beat", "log").reading_C == (88.4, 84.9, 81.6)
