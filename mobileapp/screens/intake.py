@@ -168,7 +168,6 @@ class IntakeScreen(Page):
         columns = [
             Column(
                 names[i] if i < len(names) else "",
-                1.0,
                 [row[i] if i < len(row) else "" for row in rows],
                 numeric=False,
             )

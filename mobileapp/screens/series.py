@@ -105,13 +105,13 @@ class SeriesScreen(Page):
         pairs_re = [with_uncertainty(run.reynolds, run.reynolds_u) for run in series.runs]
         pairs_nu = [with_uncertainty(run.nusselt, run.nusselt_u) for run in series.runs]
         columns = [
-            Column(_("run"), 0.5, [run.run for run in series.runs], numeric=False),
-            Column(_("m/s"), 0.8, [number(run.velocity_m_s, 2) for run in series.runs]),
-            Column("Re", 1.0, [value for value, _u in pairs_re]),
-            Column(_("u"), 0.7, [u for _value, u in pairs_re]),
-            Column("Nu", 0.9, [value for value, _u in pairs_nu]),
-            Column(_("u"), 0.6, [u for _value, u in pairs_nu]),
-            Column(_("off, %"), 0.8, [number(100 * run.residual, 1) for run in series.runs]),
+            Column(_("run"), [run.run for run in series.runs], numeric=False),
+            Column(_("m/s"), [number(run.velocity_m_s, 2) for run in series.runs]),
+            Column("Re", [value for value, _u in pairs_re]),
+            Column(_("u"), [u for _value, u in pairs_re]),
+            Column("Nu", [value for value, _u in pairs_nu]),
+            Column(_("u"), [u for _value, u in pairs_nu]),
+            Column(_("off, %"), [number(100 * run.residual, 1) for run in series.runs]),
         ]
         by_number = {str(run.number): run.run for run in self.model.session.runs}
         self.ids.runs.show(columns, [by_number[run.run] for run in series.runs])
@@ -130,10 +130,10 @@ class SeriesScreen(Page):
                 off.append(number(100 * (nusselt[name] / group.nusselt - 1), 1))
         if groups:
             columns = [
-                Column(_("m/s"), 0.6, speeds),
-                Column(_("run"), 0.5, names),
-                Column(_("h, W/(m²·K)"), 1.6, values),
-                Column(_("off the mean, %"), 1.2, off),
+                Column(_("m/s"), speeds),
+                Column(_("run"), names),
+                Column(_("h, W/(m²·K)"), values),
+                Column(_("off the mean, %"), off),
             ]
             self.ids.repeats.show(columns)
         else:
@@ -194,7 +194,7 @@ class SeriesScreen(Page):
             parts.append(Whisker((x, y - 2 * run.nusselt_u), (x, y + 2 * run.nusselt_u), "ember"))
         parts.append(Marks(list(zip(re, nu, strict=True)), "ember", "dot", 4.5))
         named = [band for band in self._bands if band.correlation in self._shown_bands]
-        parts += [_note(band, 3 + 9 * i) for i, band in enumerate(named)]
+        parts += [_note(band, 8 + 7 * i) for i, band in enumerate(named)]
         self.ids.picture.show(*parts, view=(low, high, min(reach) / 1.05, max(reach) * 1.05))
 
     @staticmethod
@@ -212,5 +212,5 @@ class SeriesScreen(Page):
 
 
 def _note(band: LawBand, at: int) -> Note:
-    """The band's name above its upper edge."""
-    return Note((band.reynolds[at], band.nusselt[at] * (1 + band.band_rel)), law_label(band.correlation), "soft")
+    """The band's name below its lower edge, where the rising band leaves room."""
+    return Note((band.reynolds[at], band.nusselt[at] * (1 - band.band_rel)), law_label(band.correlation), "soft")
