@@ -25,7 +25,8 @@ def test_every_file_that_the_documents_name_is_there():
 @pytest.mark.parametrize("command", ["fit", "expect", "air", "series", "report", "import"])
 def test_every_command_is_in_the_documents_and_answers(command):
     assert f"python -m core {command}" in README + DEVELOPERS
-    told = subprocess.run([sys.executable, "-m", "core", command, "--help"], cwd=ROOT, check=False, capture_output=True, text=True)
+    words = [sys.executable, "-m", "core", command, "--help"]
+    told = subprocess.run(words, cwd=ROOT, check=False, capture_output=True, text=True)
     assert told.returncode == 0
 
 
