@@ -15,13 +15,17 @@ from core.judgement.patterns import (
     repeated_share,
     residual_pattern,
     run_chance,
+    skipping_share,
 )
 
 PATTERN_PROBABILITY = 1e-3  # a sound run shows such a pattern once in 1000; 2 % of sound runs over all checks
+SKIPPING_SHARE = 0.1
+SKIPPING_CORRELATION = 0.2  # of neighbours on a display that skips numbers; measured on simulated sound runs
 ASYMPTOTE_SIGMAS = 3.5
 REFRESH_MISMATCH = 0.15  # the likelihood hardly feels a refresh that is 15 % off
 BEAT_SHARE = 0.7
 GAP_GROWTH = 1.3
+TELLING_READINGS = 20
 DOUBTFUL_FEWEST = 2  # a careful hand is late once in a run
 START_SHARE = 0.02  # two changes of a 1 K display; sound runs keep their start
 
@@ -67,12 +71,21 @@ def display(evidence: Evidence) -> Finding:
     """Whether the shown numbers are steps of the set resolution."""
     resolution = evidence.setup.thermometer.resolution_K
     step = display_step(evidence.readings.reading_C, resolution)
-    ratio = step / resolution
-    fits = abs(ratio - 1.0) < 0.005 or (round(ratio) > 1 and len(evidence.readings) < 10)
-    if fits:
+    coarser = round(step / resolution) > 1
+    if abs(step / resolution - 1.0) < 0.005 or (coarser and not _steps_tell(evidence)):
         return Finding("good", step, resolution, "The readings fit the display's step.")
     advice = f"The readings go in steps of {step:g} K: set the resolution of the display to that."
     return Finding("look", step, resolution, advice)
+
+
+def _steps_tell(evidence: Evidence) -> bool:
+    """Whether a display of the set step would have shown single steps or odd ones by now: enough readings, and
+    changes so slow that it no longer skips numbers between two renewals."""
+    times, setup = evidence.readings.time_s, evidence.setup
+    if len(times) < TELLING_READINGS or setup.recording.mode == "beat":
+        return len(times) >= TELLING_READINGS
+    third = len(times) // 3
+    return (times[-1] - times[-1 - third]) / third > 2.0 * setup.thermometer.refresh_s
 
 
 def refresh(evidence: Evidence) -> Finding:
@@ -122,8 +135,12 @@ def start(evidence: Evidence) -> Finding:
 
 def pattern(evidence: Evidence) -> Finding:
     """Whether the residuals still hold a pattern, or the readings in doubt come in a row."""
-    fit = evidence.fit
-    found = residual_pattern([one for one in fit.residual_score if one is not None])
+    fit, setup = evidence.fit, evidence.setup
+    skips = setup.recording.mode == "change" and skipping_share(
+        evidence.readings.reading_C, setup.thermometer.resolution_K
+    ) > SKIPPING_SHARE
+    scores = [one for one in fit.residual_score if one is not None]
+    found = residual_pattern(scores, SKIPPING_CORRELATION if skips else 0.0)
     if found is None:
         return unknown("Too few readings to tell.", PATTERN_PROBABILITY)
     doubted = [one.row for one in fit.left_out if one.cause not in {"start", "dropped"}]

@@ -7,27 +7,27 @@ from math import sqrt
 
 from core.judgement.answer import BudgetLine
 
-_CALIPER = "measure it at several places with a micrometer, and give the mean and its uncertainty"
+_CALIPER = "Measure it at several places with a micrometer, and give the mean and its uncertainty."
 _ADVICE = {
     "diameter": _CALIPER,
     "length": _CALIPER,
     "side a": _CALIPER,
     "side b": _CALIPER,
     "side c": _CALIPER,
-    "mass": "weigh the body on a finer balance",
-    "density": "weigh the body; the mass then takes the place of density times volume",
-    "heat capacity": "take the value of this very alloy from its data sheet, or have a piece of it measured",
-    "conductivity": "take the value of this very alloy from its data sheet, or use a thinner body",
-    "readings and their fit": "start hotter, record longer, or use a display with a finer step",
-    "thermometer offset": "have the thermometer calibrated near 30 and 90 °C",
-    "thermometer gain": "have the thermometer calibrated near 30 and 90 °C",
-    "air temperature": "hold both thermometers in the same air before the run, and enter the compared value",
-    "emissivity": "polish the body, or measure its emissivity",
-    "stem loss": "record a run in still air with this holder; it measures the stem loss",
-    "tap delay": "measure the mean delay of your tap, or read on a beat",
-    "velocity": "traverse the duct and average several readings of a calibrated anemometer",
-    "pressure": "read the pressure from a barometer at the bench",
-    "humidity": "read the humidity at the bench",
+    "mass": "Weigh the body on a finer balance.",
+    "density": "Weigh the body; the mass then takes the place of density times volume.",
+    "heat capacity": "Take the value of this very alloy from its data sheet, or have a piece of it measured.",
+    "conductivity": "Take the value of this very alloy from its data sheet, or use a thinner body.",
+    "readings and their fit": "Start hotter, record longer, or use a display with a finer step.",
+    "thermometer offset": "Have the thermometer calibrated near 30 and 90 °C.",
+    "thermometer gain": "Have the thermometer calibrated near 30 and 90 °C.",
+    "air temperature": "Hold both thermometers in the same air before the run, and enter the compared value.",
+    "emissivity": "Polish the body, or measure its emissivity.",
+    "stem loss": "Record a run in still air with this holder; it measures the stem loss.",
+    "tap delay": "Measure the mean delay of your tap, or read on a beat.",
+    "velocity": "Traverse the duct and average several readings of a calibrated anemometer.",
+    "pressure": "Read the pressure from a barometer at the bench.",
+    "humidity": "Read the humidity at the bench.",
 }
 
 
@@ -48,6 +48,6 @@ def next_improvement(budget: Sequence[BudgetLine], h_U95_rel: float) -> str:
     first = budget[0]
     halved = h_U95_rel * sqrt(1.0 - 0.75 * first.share)
     return (
-        f"The {first.input} makes {100 * first.share:.0f} % of the variance: {_ADVICE[first.input]}. "
+        f"The {first.input} makes {100 * first.share:.0f} % of the variance. {_ADVICE[first.input]} "
         f"With half its uncertainty h would be sure to ± {100 * halved:.1f} %, not ± {100 * h_U95_rel:.1f} %."
     )

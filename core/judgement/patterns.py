@@ -13,7 +13,7 @@ from core.judgement.propagation import Vector
 from core.judgement.student import chi_square_tail
 
 _WAVES = 4  # slow waves over the run that the smooth test looks for
-_PERIODS_S = (0.15, 6.0)  # refresh times that meters have, with margin on both sides
+_PERIODS_S = (0.25, 6.0)  # refresh times of meters; a hand blurs shorter ones away
 _CHANCE = 1e-5  # probability that free tap times look like a grid of that strength
 
 
@@ -30,17 +30,19 @@ class Pattern:
         return min(1.0, 2.0 * min(self.waves, self.neighbours))
 
 
-def residual_pattern(scores: Sequence[float]) -> Pattern | None:
+def residual_pattern(scores: Sequence[float], natural: float = 0.0) -> Pattern | None:
     """Whether standardised residuals, in order of time, are free of structure.
 
-    Two tests of independent N(0, 1) scores: a smooth test, the sum of the squared projections on the first four
-    cosines over the run, chi-square with four degrees of freedom (the fit has already taken out part of the
-    slowest ones, so the test errs on the quiet side); and the lag-one autocorrelation, normal with variance 1/n.
-    Scores are held to ±3, so that one late tap does not pose as a pattern.
+    Two tests of N(0, 1) scores: a smooth test, the sum of the squared projections on the first four cosines over
+    the run, chi-square with four degrees of freedom (the fit has already taken out part of the slowest ones, so
+    the test errs on the quiet side); and the lag-one autocorrelation, normal with variance 1/n. Scores are held to
+    ±3, so that one late tap does not pose as a pattern.
 
     Parameters
     ----------
     scores : standardised residuals of the readings in the fit, shape (n,) [-]
+    natural : correlation of neighbours that needs no cause; what exceeds it counts, and slow waves are expected
+        to be (1 + r)/(1 − r) times as strong [-]
 
     Returns
     -------
@@ -57,10 +59,15 @@ def residual_pattern(scores: Sequence[float]) -> Pattern | None:
         return None
     order = np.arange(1, _WAVES + 1)[:, np.newaxis]
     waves = sqrt(2.0 / n) * np.cos(np.pi * order * (np.arange(n) + 0.5) / n)
-    strength = float(np.sum((waves @ z) ** 2))
+    strength = float(np.sum((waves @ z) ** 2)) * (1.0 - natural) / (1.0 + natural)
     spread = float(z @ z)
-    r = float(z[1:] @ z[:-1]) / spread if spread > 0.0 else 0.0
-    return Pattern(chi_square_tail(strength, _WAVES), erfc(abs(r) * sqrt(n / 2.0)))
+    r = abs(float(z[1:] @ z[:-1]) / spread) if spread > 0.0 else 0.0
+    return Pattern(chi_square_tail(strength, _WAVES), erfc(max(r - natural, 0.0) * sqrt(n / 2.0)))
+
+
+def skipping_share(reading_C: Sequence[float], resolution_K: float) -> float:
+    """Share of the readings that follow the one before by more than one step of the display."""
+    return float(np.mean(np.abs(np.diff(np.asarray(reading_C, dtype=float))) > 1.5 * resolution_K))
 
 
 def run_chance(doubted: Sequence[int], readings: int, fault_rate: float = 0.05) -> float:

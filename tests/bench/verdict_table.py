@@ -14,13 +14,13 @@ from core.judgement.judge import judge
 from tests.judgement.faults import FAULTS, earlier, sound
 
 
-def speaking(setup, readings) -> dict[str, str]:
-    """The checks that are not good, with their outcome; a refusal counts as one."""
+def speaking(setup, readings) -> tuple[str, set[str]]:
+    """The verdict, and the checks that are not good; a refusal counts as one."""
     try:
         answer = judge(readings, setup, earlier=(earlier(),))
-    except (BenchError, np.linalg.LinAlgError) as error:
-        return {f"refused: {error}": "again"}
-    return {one.name: one.outcome for one in answer.checks if one.outcome != "good"}
+    except BenchError as error:
+        return "refused", {f"refused: {error}"}
+    return answer.verdict, {one.name for one in answer.checks if one.outcome != "good"}
 
 
 def main(sound_runs: int, runs_each: int) -> None:
@@ -28,17 +28,17 @@ def main(sound_runs: int, runs_each: int) -> None:
     for name, fault in FAULTS.items():
         caught, spoke, verdicts = 0, Counter(), Counter()
         for seed in range(runs_each):
-            found = speaking(*fault.make(seed, np.random.default_rng((seed, 3))))
-            caught += bool(fault.checks & set(found))
-            spoke.update(found.keys())
-            verdicts["again" if "again" in found.values() else "look" if found else "keep"] += 1
+            verdict, found = speaking(*fault.make(seed, np.random.default_rng((seed, 3))))
+            caught += bool(fault.checks & found)
+            spoke.update(found)
+            verdicts[verdict] += 1
         shares = ", ".join(f"{check} {count / runs_each:.2f}" for check, count in spoke.most_common(5))
         print(f"{name:36}{caught / runs_each:8.2f}{verdicts.most_common(1)[0][0]:>9}  {shares}", flush=True)
     alarms, spoke = 0, Counter()
     for seed in range(sound_runs):
-        found = speaking(*sound(seed))
+        _, found = speaking(*sound(seed))
         alarms += bool(found)
-        spoke.update(found.keys())
+        spoke.update(found)
     print(f"sound runs with any alarm: {alarms} of {sound_runs} ({100 * alarms / sound_runs:.1f} %) {dict(spoke)}")
 
 

@@ -196,7 +196,7 @@ def sound(seed: int) -> tuple[Setup, Readings]:
     """A sound run on one of many sound benches: display, rounding, mode, speed of the air and drift drawn."""
     generator = np.random.default_rng((seed, 7))
     resolution, refresh = ((1.0, 0.5), (1.0, 1.0), (1.0, 2.0), (0.5, 0.7), (0.1, 1.0))[generator.integers(5)]
-    beat = resolution == 0.1 or generator.random() < 0.3
+    beat = generator.random() < (0.5 if resolution == 0.1 else 0.3)
     rounding = ("nearest", "down")[generator.integers(2)]
     written = with_(WRITTEN, "thermometer", resolution_K=resolution, refresh_s=refresh, rounding=rounding)
     written = with_(written, "recording", mode="beat" if beat else "change")

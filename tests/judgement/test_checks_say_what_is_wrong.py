@@ -136,6 +136,13 @@ def test_what_was_not_measured_raises_no_alarm_but_says_so():
         assert checks[name].value is None
 
 
+def test_a_display_that_skips_numbers_while_it_is_fast_is_not_taken_for_a_coarser_one():
+    """0.1 K and a renewal each 0.5 s at 0.4 K/s: the first readings all go by 0.2 K."""
+    taps = Readings(tuple(0.5 * i for i in range(24)), tuple(90.0 - 0.2 * i for i in range(24)))
+    case = evidence(readings=taps, setup=bench(thermometer={"resolution_K": 0.1}), fit={"residual_score": ()})
+    assert outcomes(case)["display step"] == "good"
+
+
 def test_a_start_set_by_the_person_is_theirs():
     assert outcomes(evidence(fit={"window_s": (110.0, 300.0), "start_by": "person"}))["start"] == "good"
 
