@@ -23,7 +23,7 @@ SPREAD = 0.25  # the true h lies within a quarter of the expected one, drawn eve
 END_EXCESS_K = 4.0
 STRAY_S = 1.0  # a tap further than this from the middle of all delays belongs to no change
 SHORT_BENCH = Setup(
-    body=Body(shape="cylinder", diameter_m=0.006, length_m=0.1, material="aluminium", emissivity=0.05),
+    body=Body(shape="cylinder", diameter_m=0.008, length_m=0.1, material="aluminium", emissivity=0.05),
     thermometer=Thermometer(resolution_K=1.0, refresh_s=0.3, accuracy_K=0.1),
     recording=Recording(mode="change", beat_s=3.0),
     air=Surrounding(temperature_C=23.0),

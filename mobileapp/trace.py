@@ -45,7 +45,7 @@ def _target(widget: Any, height: float) -> dict[str, Any]:
     x, y = widget.to_window(widget.x, widget.y)
     return {
         "kind": type(widget).__name__,
-        "text": getattr(widget, "text", "") or getattr(widget, "number_text", ""),
+        "text": getattr(widget, "text", "") or getattr(widget, "number_text", "") or getattr(widget, "figure", ""),
         "x": round(x),
         "y": round(height - y - widget.height),
         "w": round(widget.width),

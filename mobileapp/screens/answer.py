@@ -112,7 +112,15 @@ class AnswerScreen(Page):
         parts.append(f"U95 {percent(answer.h_U95_W_m2K / answer.h_W_m2K, 1)}")
         self.side_words = "   ".join(parts)
         self._show_truth(answer)
-        trace("answer", run=self.run, h=answer.h_W_m2K, U95=answer.h_U95_W_m2K, verdict=answer.verdict)
+        trace(
+            "answer",
+            run=self.run,
+            h=answer.h_W_m2K,
+            U95=answer.h_U95_W_m2K,
+            verdict=answer.verdict,
+            reason=answer.reason,
+            shown=f"{self.h_text} {self.u_text}",
+        )
 
     def _refused(self, sentence: str) -> None:
         self.h_text = NO_VALUE

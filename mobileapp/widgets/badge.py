@@ -63,8 +63,13 @@ class VerdictShape(Widget):
         self.canvas.add(self._drawing)
         draw = Clock.create_trigger(self._draw, -1)
         self.bind(pos=draw, size=draw, verdict=draw)
-        look.bind(palette_name=draw)
+        self._soon = draw
+        look.bind(palette_name=self.restyle)
         draw()
+
+    def restyle(self, *_args: Any) -> None:
+        """The theme has changed. Bound as a method, which the theme holds weakly: a trigger would keep the widget."""
+        self._soon()
 
     def _draw(self, *_args: Any) -> None:
         drawing = self._drawing

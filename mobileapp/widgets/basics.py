@@ -70,13 +70,6 @@ class Sheet(BoxLayout):
 
     ground = ColorProperty(look.panel)
 
-    def __init__(self, **options: Any) -> None:
-        self._own_ground = "ground" in options
-        super().__init__(**options)
-        if not self._own_ground:
-            look.bind(panel=self.setter("ground"))
-            self.ground = look.panel
-
 
 class Press(ButtonBehavior, Label):
     """What can be pressed; at least as tall as a finger's target."""

@@ -23,7 +23,11 @@ class EdgeLayout(Layout):
         super().__init__(**options)
         place = self._trigger_layout
         self.bind(pos=place, size=place, children=place, hand=place, absent=place)
-        look.bind(glove=place, grid=place)
+        look.bind(glove=self.restyle, grid=self.restyle)
+
+    def restyle(self, *_args: Any) -> None:
+        """The theme has changed. Bound as a method, which the theme holds weakly: a trigger would keep the widget."""
+        self._trigger_layout()
 
     def _edge_children(self) -> tuple[Any, list[Any]]:
         ordered = list(reversed(self.children))

@@ -40,7 +40,11 @@ class Gauge(Widget):
         self.canvas.add(self._drawing)
         self._again = Clock.create_trigger(self._draw)
         self.bind(pos=self._again, size=self._again, unit=self._again)
-        look.bind(palette_name=self._again, text_scale=self._again)
+        look.bind(palette_name=self.restyle, text_scale=self.restyle)
+
+    def restyle(self, *_args: Any) -> None:
+        """The theme has changed. Bound as a method, which the theme holds weakly."""
+        self._again()
 
     def show(self, spans: Sequence[Span]) -> None:
         """Draw these spans, the measured one first."""

@@ -56,7 +56,11 @@ class GridTable(BoxLayout):
         self._needs: list[float] = []
         self._fit_soon = Clock.create_trigger(self._fit, -1)
         self.bind(width=self._fit_soon)
-        look.bind(text_scale=self._fit_soon)
+        look.bind(text_scale=self.restyle)
+
+    def restyle(self, *_args: Any) -> None:
+        """The theme has changed. Bound as a method, which the theme holds weakly."""
+        self._fit_soon()
 
     def show(self, columns: Sequence[Column], keys: Sequence[str] = ()) -> None:
         """Put up these columns; with `keys` each line can be pressed."""

@@ -63,10 +63,10 @@ class Pad(PadTouch, FloatLayout):
         self._scale = InstructionGroup()
         self.canvas.add(self._scale)
         self._paint_heat()
-        look.bind(palette_name=self._paint_heat)
         redraw = Clock.create_trigger(self._draw_scale)
         self.bind(marks=redraw, pos=redraw, size=redraw)
-        look.bind(palette_name=redraw, text_scale=redraw)
+        self._redraw = redraw
+        look.bind(palette_name=self.restyle, text_scale=self.restyle)
         self._end_flash = Clock.create_trigger(self._dark, FLASH_S)
         self._end_refusal = Clock.create_trigger(self._forget_refusal, REFUSED_S)
 
@@ -79,6 +79,11 @@ class Pad(PadTouch, FloatLayout):
             pixels += bytes(round(255 * channel) for channel in heat_colour(row / (rows - 1))[:3])
         texture.blit_buffer(bytes(pixels), colorfmt="rgb", bufferfmt="ubyte")
         self.heat = texture
+
+    def restyle(self, *_args: Any) -> None:
+        """The theme has changed. Bound as a method, which the theme holds weakly: a trigger would keep the widget."""
+        self._paint_heat()
+        self._redraw()
 
     def confirm(self) -> None:
         """Light for a tap that the journal holds."""

@@ -137,7 +137,11 @@ class Plot(Widget):
             pos=self.redraw, size=self.redraw, view=self.redraw, x_label=self.redraw, y_label=self.redraw,
             handle_x=self.redraw,
         )  # fmt: skip
-        look.bind(palette_name=self.redraw, text_scale=self.redraw)
+        look.bind(palette_name=self.restyle, text_scale=self.restyle)
+
+    def restyle(self, *_args: Any) -> None:
+        """The theme has changed. Bound as a method, which the theme holds weakly: a trigger would keep the widget."""
+        self.redraw()
 
     # ------------------------------------------------------------------ what is shown
 

@@ -17,30 +17,29 @@ sys.path[:0] = [str(Path(__file__).parent), str(Path(__file__).resolve().parents
 from window import AppInWindow, virtual_screen  # noqa: E402  the folder of this script is not a package
 
 MEAN_DELAY_S, SCATTER_S = 0.09, 0.03
-LAST_C = 34
+LAST_C = 42
 
 
 def rehearse(app: AppInWindow, seed: int) -> list[float]:
-    """Start a rehearsal and tap once at each change of the display, with a hand's own delay; returns when each
-    tap was sent."""
+    """Start a rehearsal and tap at each change of the display, with a hand's own delay; where the display jumps by
+    two or three, the key for as many steps is used. Returns when each was sent."""
     hand = random.Random(seed)
     app.go("Rehearse", "rehearsal")
     app.go("To the pad", "record")
     app.point(app.target("", "Pad"))
-    shown: int | None = None
+    waited_for = int(app.target("", "Pad")["text"])
+    shown = int(app.named("display")[-1]["text"])
+    for _late in range(waited_for - shown + 1):
+        app.press("−1")
+    app.point(app.target("", "Pad"))
     sent: list[float] = []
-    while shown is None or shown > LAST_C:
+    while shown > LAST_C:
         event = app.wait_for("display", lambda one: bool(one["text"]))
-        reading = int(event["text"])
-        if shown is None:
-            shown = reading
-            continue
+        steps = shown - int(event["text"])
         delay_s = max(0.02, hand.gauss(MEAN_DELAY_S, SCATTER_S))
-        for _skipped in range(shown - reading):
-            time.sleep(max(0.0, event["t"] + delay_s - time.monotonic()))
-            sent.append(app.hand.tap())
-            delay_s += 0.09
-        shown = reading
+        time.sleep(max(0.0, event["t"] + delay_s - time.monotonic()))
+        sent.append(app.hand.tap() if steps == 1 else app.hand.key(str(steps)))
+        shown -= steps
     return sent
 
 
@@ -71,7 +70,7 @@ def main() -> int:
             inside += abs(off) <= answer["U95"]
             print(
                 f"{seed:3d}  {taps} taps  h {answer['h']:.2f} ± {answer['U95']:.2f}, true {truth:.2f}, "
-                f"off {100 * off / truth:+.2f} %  {answer['verdict']}",
+                f"off {100 * off / truth:+.2f} %  {answer['verdict']}: {answer['reason']}",
                 flush=True,
             )
     print(f"within U95: {inside} of {count}")

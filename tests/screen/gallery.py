@@ -1,20 +1,23 @@
 """Every screen as a picture, and what is wrong with it: texts that are cut, targets that are too small.
 
-`python tests/screen/gallery.py OUT --size 1280x800 --density 1 --palette day --text 1.0 [--only home]`
-draws without any display (SDL's offscreen driver) and prints one JSON object. The data are invented here: a bench
-of a small maker of fruit-drying cabinets, four runs whose taps follow a simulated display with a seeded hand."""
+`python tests/screen/gallery.py OUT [--only home,record] 1280x800/day/1.0/en 800x1280/night/1.5/de …` draws without any
+display (SDL's offscreen driver), a folder a variant, and prints one JSON object. Without variants it takes those of
+the suite; with `--sheet` it lays all pictures onto one contact sheet (ImageMagick). The data are invented here: a
+bench of a small maker of fruit-drying cabinets, four runs whose taps follow a simulated display with a seeded hand."""
 
 from __future__ import annotations
 
 import argparse
+import gc
 import json
 import os
 import random
+import subprocess
 import sys
 import tempfile
 import time
 from collections.abc import Callable
-from dataclasses import replace
+from dataclasses import dataclass, replace
 from pathlib import Path
 
 ROOT = Path(__file__).resolve().parents[2]
@@ -24,18 +27,45 @@ SCREENS = (
     "answer-look", "answer-rehearsal", "answer-reason", "detail", "series", "handover", "settings",
     "intake",
 )  # fmt: skip
-SETTLE_FRAMES = 14
+SETTLE_FRAMES = 7
+
+
+TESTED = ("1280x800/day/1.5/de", "800x1280/night/1.5/en", "960x600/hall/1.0/en", "360x640/day/1.0/de")
+VARIANTS = (
+    *TESTED,
+    "1280x800/day/1.0/en",
+    "800x1280/hall/1.0/de",
+    "640x360/night/1.0/en",
+)  # in dp: 1280x800 is also an 11-inch tablet of 1920x1200 at a density of 1.5
+
+
+@dataclass(frozen=True)
+class Variant:
+    """One size, palette, scale of text and language."""
+
+    size: tuple[int, int]
+    palette: str
+    text: float
+    language: str
+
+    @classmethod
+    def of(cls, words: str) -> Variant:
+        size, palette, text, language = words.split("/")
+        width, height = size.split("x")
+        return cls((int(width), int(height)), palette, float(text), language)
+
+    @property
+    def phone(self) -> bool:
+        return min(self.size) < 500
 
 
 def _arguments() -> argparse.Namespace:
     parser = argparse.ArgumentParser()
     parser.add_argument("out", type=Path)
-    parser.add_argument("--size", default="1280x800")
+    parser.add_argument("variants", nargs="*", default=list(VARIANTS))
     parser.add_argument("--density", default="1")
-    parser.add_argument("--palette", default="day")
-    parser.add_argument("--text", type=float, default=1.0)
-    parser.add_argument("--language", default="en")
     parser.add_argument("--only", default="")
+    parser.add_argument("--sheet", action="store_true")
     return parser.parse_args()
 
 
@@ -49,17 +79,16 @@ def _prepare(arguments: argparse.Namespace) -> None:
     sys.path.insert(0, str(ROOT))
     from mobileapp.__main__ import prepare_environment
 
-    prepare_environment(tuple(int(part) for part in arguments.size.split("x")))
+    prepare_environment(Variant.of(arguments.variants[0]).size)
 
 
 class Gallery:
     """One model on invented data, and the pages over it."""
 
-    def __init__(self, arguments: argparse.Namespace) -> None:
+    def __init__(self, density: float) -> None:
         from kivy.base import EventLoop
         from kivy.core.window import Window
 
-        from mobileapp import words
         from mobileapp.device.clock import SystemClock
         from mobileapp.device.haptics import NoHaptics
         from mobileapp.device.ports import Device
@@ -70,19 +99,29 @@ class Gallery:
         from mobileapp.preferences import Preferences
         from mobileapp.theme import look, register_fonts
 
-        self.arguments = arguments
+        self.density = density
         self.window, self.loop = Window, EventLoop
         register_fonts()
-        words.use(arguments.language)
-        look.wear(arguments.palette, arguments.text)
-        Window.clearcolor = look.ground
+        look.wear("day", 1.0)
+        look.bind(ground=lambda _look, ground: setattr(Window, "clearcolor", ground))
         self.look = look
         data = Path(tempfile.mkdtemp(prefix="gallery"))
         device = Device(SystemClock(), LoopStamp(), NoHaptics(), NoSounds(), WindowScreen(), data)
-        self.model = Model(device, Preferences(arguments.palette, arguments.text, arguments.language))
+        self.model = Model(device, Preferences())
         EventLoop.ensure_window()
         self.navigator = None
         EventLoop.start()
+
+    def put_on(self, variant: Variant) -> None:
+        """Change size, palette, text and language; the next page shown is made anew."""
+        from mobileapp import words
+
+        self.variant = variant
+        words.use(variant.language)
+        self.window.size = variant.size
+        self.look.wear(variant.palette, variant.text)
+        self.window.clearcolor = self.look.ground
+        self.settle(3)
 
     def settle(self, frames: int = SETTLE_FRAMES) -> None:
         for _frame in range(frames):
@@ -92,7 +131,11 @@ class Gallery:
         from mobileapp.navigation import Navigator
 
         if self.navigator is not None:
+            self.navigator.current_screen.leave()
             self.window.remove_widget(self.navigator)
+            self.navigator.clear_widgets()
+            self.navigator = None
+            gc.collect()
         self.navigator = Navigator(self.model)
         self.window.add_widget(self.navigator)
         self.navigator.trail = [("home", {})] if name != "home" else []
@@ -211,7 +254,7 @@ class Gallery:
         if name == "before":
             page.ids.cautions.children[0].ticked = True
             self.until(lambda: bool(page.expectation), 10.0)
-        self.settle(40 if kind in ("series", "handover") else SETTLE_FRAMES)
+        self.settle(20 if kind in ("series", "handover") else SETTLE_FRAMES)
         return page
 
     def _stage_record(self, state: str) -> object:
@@ -232,7 +275,7 @@ class Gallery:
         if state == "number":
             page.asking_number = True
             page.ids.number.entered = "61"
-        self.settle(40 if not state else 6)
+        self.settle(20 if not state else 4)
         return page
 
     def _stage_beat(self, question: bool) -> None:
@@ -317,9 +360,9 @@ class Gallery:
     def _small_targets(self, page: object) -> list[str]:
         """Targets below 12 mm; on the record screen, used in gloves, below 22 mm (on a phone 15, digits 12)."""
         gloved = page.name == "record"
-        phone = min(self.window.width, self.window.height) < 500 * float(self.arguments.density)
+        phone = self.variant.phone
         least_mm = (15.0 if phone else 22.0) if gloved else 12.0
-        per_mm = 160 * float(self.arguments.density) / 25.4
+        per_mm = 160 * self.density / 25.4
         faults = []
         for widget in self._shown(page):
             touchable = hasattr(widget, "rim") or type(widget).__name__ in ("Tick", "RunRow", "LineInput", "Pad")
@@ -337,31 +380,37 @@ class Gallery:
         return faults
 
 
-def main() -> int:
+def main() -> None:
     arguments = _arguments()
-    arguments.out.mkdir(parents=True, exist_ok=True)
-    arguments.out = arguments.out.resolve()
+    out = arguments.out.resolve()
     os.chdir(ROOT)
     _prepare(arguments)
-    gallery = Gallery(arguments)
+    gallery = Gallery(float(arguments.density))
     wanted = [name for name in SCREENS if not arguments.only or name in arguments.only.split(",")]
-    found: dict[str, list[str]] = {}
-    filled = False
-    for name in wanted:
-        if not name.endswith("-empty") and not filled:
+    found: dict[str, dict[str, list[str]]] = {}
+    empty = [name for name in wanted if name.endswith("-empty")]
+    for names in (empty, [name for name in wanted if name not in empty]):
+        if names and names is not empty:
             gallery.fill()
-            filled = True
-        kind = name.partition("-")[0]
-        if not (ROOT / "mobileapp" / "screens" / f"{kind}.kv").is_file():
-            continue
-        page = gallery.stage(name)
-        gallery.picture(arguments.out / f"{name}.png")
-        found[name] = gallery.faults(page)
-        gallery.put_away()
+        for words in arguments.variants:
+            gallery.put_on(Variant.of(words))
+            folder = out / words.replace("/", "_")
+            folder.mkdir(parents=True, exist_ok=True)
+            for name in names:
+                if not (ROOT / "mobileapp" / "screens" / f"{name.partition('-')[0]}.kv").is_file():
+                    continue
+                page = gallery.stage(name)
+                gallery.picture(folder / f"{name}.png")
+                found.setdefault(words, {})[name] = gallery.faults(page)
+                gallery.put_away()
     gallery.model.close()
+    if arguments.sheet:
+        pictures = sorted(str(path) for path in out.glob("*/*.png"))
+        tiles = ["-tile", "8x", "-geometry", "420x420+6+6", "-background", "#888888"]
+        subprocess.run(["montage", *pictures, *tiles, str(out / "contact_sheet.jpg")], check=True)
     print(json.dumps(found))
     sys.stdout.flush()
-    os._exit(0)
+    os._exit(0)  # the window library's threads are not waited for
 
 
 if __name__ == "__main__":
