@@ -50,9 +50,19 @@ def main(argv: list[str] | None = None) -> int:
     parser.add_argument("--demo", action="store_true", help="open with the invented demo session in it")
     arguments = parser.parse_args(sys.argv[1:] if argv is None else argv)
     prepare_environment(arguments.size)
-    from mobileapp.app import CooltallyApp
+    from kivy.base import ExceptionManager
 
-    CooltallyApp(data=arguments.data, demo=arguments.demo).run()
+    from core.errors import BenchError
+    from mobileapp.app import CooltallyApp
+    from mobileapp.refusals import RefusalApp, Refusals
+
+    ExceptionManager.add_handler(Refusals())
+    try:
+        CooltallyApp(data=arguments.data, demo=arguments.demo).run()
+    except BenchError as refusal:
+        print(refusal, file=sys.stderr)
+        RefusalApp(str(refusal)).run()
+        return 1
     return 0
 
 
