@@ -129,6 +129,15 @@ def test_the_reason_is_the_advice_of_the_weightiest_of_the_worst():
     assert "± 20.0 %" in reason
 
 
+def test_a_symptom_leaves_the_word_to_a_measured_cause():
+    """Many readings in doubt because the damper crept: again, and the reason is the damper."""
+    doubted = tuple(LeftOut(row, "late", "Late.", "program") for row in range(3, 45, 4))
+    crept = bench(flow={"velocity_end_m_s": 7.5})
+    verdict, reason = conclude(run_checks(evidence(setup=crept, fit={"left_out": doubted})))
+    assert verdict == "again"
+    assert "lock the damper" in reason
+
+
 def test_what_was_not_measured_raises_no_alarm_but_says_so():
     checks = {one.name: one for one in run_checks(evidence(mass_ratio=None, expected=()))}
     for name in ("air drift", "airspeed drift", "material", "expected h", "earlier runs"):
