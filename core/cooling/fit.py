@@ -40,7 +40,7 @@ class CoolingFit:
     h_per_air_W_m2K2: float  # change of h for 1 K in the asymptote
     h_per_measured_air_W_m2K2: float  # change of h for 1 K in the measured air, which the readings may overrule
     h_per_lag_W_m2Ks: float  # change of h for 1 s in the mean tap delay
-    phase_s: float | None
+    phase_s: float | None  # of the display's renewals, where the taps keep its clock
     covariance: tuple[tuple[float, ...], ...]
     parameters: tuple[str, ...]
     model: str  # lumped | cylinder | short-cylinder | wall | block | sphere
@@ -60,3 +60,4 @@ class CoolingFit:
     body_mean_C: float  # mean surface temperature over the window
     stem_loss_W_K: float | None = None  # fitted, in a still-air run
     stem_loss_u_W_K: float | None = None
+    refresh_found_s: float | None = None  # of the display, where the taps keep its clock

@@ -7,6 +7,7 @@ from dataclasses import dataclass
 import numpy as np
 from numpy.typing import NDArray
 
+from core.cooling.clock import clock_log_likelihood, find_clock
 from core.cooling.likelihood import Evidence, as_normal, log_likelihood
 from core.cooling.optimiser import gauss_newton
 from core.cooling.posterior import adapt
@@ -17,6 +18,8 @@ Array = NDArray[np.float64]
 MOST_ROUNDS = 60
 CONVERGED = 0.03  # of a standard deviation
 POINTS = 256
+CLOCK_POINTS = 512
+CLOCK_ROUNDS = 3
 
 
 @dataclass(frozen=True, slots=True)
@@ -29,6 +32,7 @@ class Solution:
     weights: Array
     effective: float
     rounds: int
+    clock: tuple[float, float] | None  # phase and refresh of the display [s], where the taps tell them
 
 
 def search(evidence: Evidence, guess: Array, prior: Prior, rounds: int = MOST_ROUNDS) -> tuple[Array, Array, int]:
@@ -76,19 +80,36 @@ def solve(evidence: Evidence, guess: Array, prior: Prior) -> Solution:
         whole[:, free] = shift
         return whole
 
-    def log_density(shift: Array) -> Array:
+    def apart(shift: Array) -> Array:
         whole = widened(shift)
         logs: Array = log_likelihood(evidence, features, whole) - 0.5 * (point + whole) ** 2 @ prior.weight
         return logs
 
-    posterior = adapt(log_density, np.zeros(len(free)), covariance, POINTS)
+    p = len(free)
+    clock = find_clock(evidence)
+
+    def on_clock(shift: Array) -> Array:
+        if clock is None:
+            return apart(shift)
+        whole = widened(shift[:, :p])
+        logs = clock_log_likelihood(evidence, features, clock, whole, shift[:, p], shift[:, p + 1])
+        return logs - 0.5 * (point + whole) ** 2 @ prior.weight
+
+    if clock is None:
+        posterior = adapt(apart, np.zeros(p), covariance, POINTS)
+    else:
+        first = np.zeros((p + 2, p + 2))
+        first[:p, :p], first[p:, p:] = covariance, clock.covariance
+        middle = np.concatenate([np.zeros(p), [clock.phase_s, clock.refresh_s]])
+        posterior = adapt(on_clock, middle, first, CLOCK_POINTS, CLOCK_ROUNDS)
     whole = np.zeros((3, 3))
-    whole[np.ix_(free, free)] = posterior.covariance
+    whole[np.ix_(free, free)] = posterior.covariance[:p, :p]
     return Solution(
-        parameters=point + widened(posterior.mean[None, :])[0],
+        parameters=point + widened(posterior.mean[None, :p])[0],
         covariance=whole,
-        points=point + widened(posterior.points),
+        points=point + widened(posterior.points[:, :p]),
         weights=posterior.weights,
         effective=posterior.effective,
         rounds=rounds,
+        clock=None if clock is None else (float(posterior.mean[p]), float(posterior.mean[p + 1])),
     )

@@ -1,0 +1,59 @@
+"""The fit against what the readings can tell at best, and against fits that do not think of the display.
+
+    python -m tests.bench.estimator_table [RUNS] [NAME]
+
+prints a row a scenario; 400 runs each on two processes if left out. NAME picks the scenarios that contain it."""
+
+import sys
+from multiprocessing import Pool
+
+import numpy as np
+
+from core.cooling.estimator import fit_cooling
+from tests.bench.bound import cramer_rao_rel
+from tests.bench.rivals import by_curve_fit, by_lmfit, straight_line
+from tests.bench.scenarios import SCENARIOS
+
+RIVALS = (straight_line, by_curve_fit, by_lmfit)
+BOUND_RUNS = 40
+
+
+def one_run(task):
+    """Relative error of h, its stated standard uncertainty and the rivals' errors for one run."""
+    scenario = SCENARIOS[task[0]]
+    readings = scenario.run(task[1])
+    fit = fit_cooling(readings, scenario.setup)
+    h = scenario.h_W_m2K
+    errors = [rival(scenario.setup, readings) / h - 1.0 for rival in RIVALS]
+    starts = sum(one.cause == "start" for one in fit.left_out)
+    return [fit.h_W_m2K / h - 1.0, fit.h_u_W_m2K / h, *errors, starts, len(fit.left_out) - starts, len(readings)]
+
+
+def bound_of(place):
+    """Cramér–Rao bound of one scenario, relative."""
+    return cramer_rao_rel(SCENARIOS[place], range(BOUND_RUNS))
+
+
+def rms(values):
+    return float(np.sqrt(np.mean(np.square(values))))
+
+
+def main(runs, wanted=""):
+    places = [k for k, one in enumerate(SCENARIOS) if wanted in one.name]
+    print(f"{'scenario':32}{'n':>5}{'bias %':>8}{'RMSE %':>8}{'/CRB':>6}{'cover %':>8}"
+          f"{'line %':>8}{'curve_fit':>10}{'lmfit':>8}{'best/':>7}{'start':>6}{'named':>7}")  # fmt: skip
+    with Pool(2) as pool:
+        bounds = dict(zip(places, pool.map(bound_of, places, 1), strict=True))
+        for place in places:
+            table = np.array(pool.map(one_run, [(place, seed) for seed in range(runs)], 10))
+            error, stated = 100 * table[:, 0], 100 * table[:, 1]
+            rivals = [100 * rms(table[:, 2 + k]) for k in range(len(RIVALS))]
+            print(f"{SCENARIOS[place].name:32}{table[:, -1].mean():5.0f}{error.mean():8.3f}{rms(error):8.4f}"
+                  f"{rms(error) / (100 * bounds[place]):6.2f}{100 * np.mean(np.abs(error) < 1.96 * stated):8.1f}"
+                  f"{rivals[0]:8.3f}{rivals[1]:10.3f}{rivals[2]:8.3f}{min(rivals) / rms(error):7.1f}"
+                  f"{np.mean(table[:, -3] > 0):6.3f}{table[:, -2].sum() / table[:, -1].sum():7.4f}",
+                  flush=True)  # fmt: skip
+
+
+if __name__ == "__main__":
+    main(int(sys.argv[1]) if len(sys.argv) > 1 else 400, *sys.argv[2:3])
