@@ -27,7 +27,7 @@ SCREENS = (
     "answer-look", "answer-rehearsal", "answer-reason", "detail", "series", "handover", "settings",
     "intake",
 )  # fmt: skip
-SETTLE_FRAMES = 7
+SETTLE_FRAMES = 10
 
 
 TESTED = ("1280x800/day/1.5/de", "800x1280/night/1.5/en", "960x600/hall/1.0/en", "360x640/day/1.0/de")
@@ -87,7 +87,9 @@ class Gallery:
 
     def __init__(self, density: float) -> None:
         from kivy.base import EventLoop
+        from kivy.clock import Clock
         from kivy.core.window import Window
+        from kivy.lang import Builder
 
         from mobileapp.device.clock import SystemClock
         from mobileapp.device.haptics import NoHaptics
@@ -100,7 +102,7 @@ class Gallery:
         from mobileapp.theme import look, register_fonts
 
         self.density = density
-        self.window, self.loop = Window, EventLoop
+        self.window, self.loop, self.clock, self.builder = Window, EventLoop, Clock, Builder
         register_fonts()
         look.wear("day", 1.0)
         look.bind(ground=lambda _look, ground: setattr(Window, "clearcolor", ground))
@@ -124,8 +126,12 @@ class Gallery:
         self.settle(3)
 
     def settle(self, frames: int = SETTLE_FRAMES) -> None:
+        """Let layouts come to rest; nothing is drawn, which is what costs time without a graphics card."""
         for _frame in range(frames):
-            self.loop.idle()
+            self.clock.tick()
+            self.builder.sync()
+            self.clock.tick_draw()
+            self.builder.sync()
 
     def show(self, name: str, **aim: object) -> object:
         from mobileapp.navigation import Navigator
@@ -216,7 +222,7 @@ class Gallery:
         while not done():
             if time.monotonic() > end:
                 raise RuntimeError("it took too long")
-            self.loop.idle()
+            self.settle(1)
 
     def tap_down(self, count: int) -> None:
         """A run on the pad with some taps, a second apart."""
@@ -296,6 +302,10 @@ class Gallery:
     # ------------------------------------------------------------------ pictures and faults
 
     def picture(self, path: Path) -> None:
+        self.window.canvas.ask_update()
+        self.loop.idle()
+        self.window.canvas.ask_update()
+        self.loop.idle()
         made = self.window.screenshot(name=str(path.with_suffix(".png")))
         Path(made).replace(path)
 

@@ -18,7 +18,11 @@ def drawn(tmp_path_factory):
     """All pictures, drawn in one process without a display; the folder and the faults found."""
     out = tmp_path_factory.mktemp("pictures")
     told = subprocess.run(
-        [sys.executable, str(HERE / "gallery.py"), str(out), *TESTED], capture_output=True, text=True, check=False, timeout=300
+        [sys.executable, str(HERE / "gallery.py"), str(out), *TESTED],
+        capture_output=True,
+        text=True,
+        check=False,
+        timeout=400,
     )
     assert told.returncode == 0, told.stderr[-2000:]
     return out, json.loads(told.stdout.splitlines()[-1])
