@@ -1,8 +1,9 @@
 """The catalogue of texts: `python buildspec/catalogue.py` gathers every text from the sources into the .pot file,
 brings each .po up to date without losing a translation, and compiles it.
 
-Texts are the arguments of `_` and `later` in the app, and the sentences of the core that a person reads;
-there a formatted sentence becomes one with slots: `f"{n} readings"` is kept as `{0} readings`."""
+Texts are the arguments of `_` and `later` in the app, and what a person reads of the core: its sentences, the parts
+that the checks of a set-up make sentences of, and the sources of the limits. A formatted one becomes one with slots:
+`f"{n} readings"` is kept as `{0} readings`."""
 
 from __future__ import annotations
 
@@ -22,9 +23,22 @@ CORE_SENTENCES = (
     "core/recording",
     "core/cooling",
     "core/convection",
+    "core/bench/solids.py",
+    "core/bench/units.py",
+    "core/handover/export.py",
+    "core/handover/session_files.py",
+    "core/handover/share_server.py",
+    "core/handover/sync.py",
 )
+CORE_PARTS = ("core/bench/setup_check.py", "core/cooling/diagnosis.py")
+CORE_WORDS = (
+    "above", "below", "a tap at each change", "readings on a beat", "short-cylinder", "wall", "cylinder", "block",
+    "sphere", "before the start that you set", "before the curve has settled",
+)  # fmt: skip
 _IN_KV = re.compile(r"""\b_\(\s*("(?:[^"\\]|\\.)*"|'(?:[^'\\]|\\.)*')\s*\)""")
-_SENTENCE = re.compile(r"[A-Z{0-9].*\s.*[.?!]\Z", re.DOTALL)
+_SENTENCE = re.compile(r"(?=.*[a-z]{2}.*[a-z]{2})([A-Z{0-9']|h\s).*\s.*[.?!]\Z", re.DOTALL)
+_TEXT_ARGUMENT = {"Rule": 2, "Solid": 0}  # which argument is a text, in calls that make a rule or a solid
+_PART = re.compile(r"(a|above|and|does|from|holds|is|one of|Row|the|true|where) .*", re.DOTALL)
 
 
 def gather(root: Path = ROOT) -> dict[str, str]:
@@ -40,9 +54,13 @@ def gather(root: Path = ROOT) -> dict[str, str]:
         place = root / part
         for path in sorted(place.rglob("*.py")) if place.is_dir() else [place]:
             if path.is_file():
-                for text in _sentences(ast.parse(path.read_text(encoding="utf-8"))):
+                tree = ast.parse(path.read_text(encoding="utf-8"))
+                for text in [*_texts(tree, _SENTENCE), *_sources(tree)]:
                     found.setdefault(text, str(path.relative_to(root)))
-    return found
+    for part in CORE_PARTS:
+        for text in _texts(ast.parse((root / part).read_text(encoding="utf-8")), _PART):
+            found.setdefault(text, part)
+    return found | {word: "core" for word in CORE_WORDS if word not in found}
 
 
 def _called_texts(tree: ast.AST) -> list[str]:
@@ -59,16 +77,25 @@ def _called_texts(tree: ast.AST) -> list[str]:
 
 
 def _docstrings(tree: ast.AST) -> set[int]:
-    holders = (ast.Module, ast.ClassDef, ast.FunctionDef, ast.AsyncFunctionDef)
-    return {
-        id(node.body[0].value)
-        for node in ast.walk(tree)
-        if isinstance(node, holders) and node.body and isinstance(node.body[0], ast.Expr)
-    }
+    """Every text that stands by itself: of modules, classes, functions and constants."""
+    return {id(node.value) for node in ast.walk(tree) if isinstance(node, ast.Expr)}
 
 
-def _sentences(tree: ast.AST) -> list[str]:
-    """The sentences in a module of the core, its docstrings left out."""
+def _sources(tree: ast.AST) -> list[str]:
+    """Where the limits of the checks come from, with the words it may begin with; and the names of the solids."""
+    texts = []
+    for node in ast.walk(tree):
+        if isinstance(node, ast.Call) and isinstance(node.func, ast.Name) and node.func.id in _TEXT_ARGUMENT:
+            source = node.args[_TEXT_ARGUMENT[node.func.id]]
+            texts.append(_with_slots(source) if isinstance(source, ast.JoinedStr) else ast.literal_eval(source))
+        named = isinstance(node, ast.Assign) and isinstance(node.targets[0], ast.Name)
+        if named and node.targets[0].id == "COMMON_PRACTICE":
+            texts.append(ast.literal_eval(node.value))
+    return texts
+
+
+def _texts(tree: ast.AST, wanted: re.Pattern[str]) -> list[str]:
+    """The texts of this kind in a module of the core, its docstrings left out."""
     skipped = _docstrings(tree)
     inside = {id(part) for node in ast.walk(tree) if isinstance(node, ast.JoinedStr) for part in node.values}
     texts = []
@@ -79,7 +106,7 @@ def _sentences(tree: ast.AST) -> list[str]:
             texts.append(node.value)
         elif isinstance(node, ast.JoinedStr):
             texts.append(_with_slots(node))
-    return [text for text in texts if _SENTENCE.match(text)]
+    return [text for text in texts if wanted.match(text)]
 
 
 def _with_slots(node: ast.JoinedStr) -> str:

@@ -4,7 +4,7 @@ from __future__ import annotations
 
 from core.judgement.answer import BudgetLine, Check
 from mobileapp.figures import NO_VALUE, THIN, number, percent, significant, with_uncertainty
-from mobileapp.words import _
+from mobileapp.words import _, later
 
 SHARES = frozenset(
     {
@@ -73,22 +73,22 @@ def _check_value(check: Check, value: float) -> str:
 def input_label(name: str) -> str:
     """The name of an input of the budget."""
     return {
-        "diameter": _("Diameter"),
-        "length": _("Length"),
-        "side a": _("Side across the stream"),
-        "side b": _("Side along the stream"),
-        "side c": _("Length across the stream"),
-        "mass": _("Mass"),
-        "density": _("Density"),
-        "heat capacity": _("Specific heat"),
-        "conductivity": _("Conductivity"),
-        "emissivity": _("Emissivity"),
-        "stem loss": _("Loss through holder and stem"),
-        "thermometer offset": _("Calibration of the thermometer"),
-        "thermometer gain": _("Scale of the thermometer"),
-        "air temperature": _("Air temperature"),
-        "tap delay": _("Delay of the tap"),
-        "readings and their fit": _("Readings and their fit"),
+        later("diameter"): _("Diameter"),
+        later("length"): _("Length"),
+        later("side a"): _("Side across the stream"),
+        later("side b"): _("Side along the stream"),
+        later("side c"): _("Length across the stream"),
+        later("mass"): _("Mass"),
+        later("density"): _("Density"),
+        later("heat capacity"): _("Specific heat"),
+        later("conductivity"): _("Conductivity"),
+        later("emissivity"): _("Emissivity"),
+        later("stem loss"): _("Loss through holder and stem"),
+        later("thermometer offset"): _("Calibration of the thermometer"),
+        later("thermometer gain"): _("Scale of the thermometer"),
+        later("air temperature"): _("Air temperature"),
+        later("tap delay"): _("Delay of the tap"),
+        later("readings and their fit"): _("Readings and their fit"),
     }.get(name, _(name))
 
 

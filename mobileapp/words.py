@@ -13,6 +13,7 @@ from pathlib import Path
 LOCALE = Path(__file__).parent / "locale"
 LANGUAGES = {"en": "English", "de": "Deutsch"}
 _SLOT = re.compile(r"\{(\w*)\}")
+_NUMBER = re.compile(r"[+−-]?\d+\.\d+")
 
 
 class _Catalogue:
@@ -66,7 +67,7 @@ def _patterns() -> tuple[tuple[re.Pattern[str], tuple[str, ...], str], ...]:
     def pattern(source: str) -> re.Pattern[str]:
         parts = _SLOT.split(source)
         fixed = [re.escape(part) for part in parts[::2]]
-        return re.compile("(.+?)".join(fixed) + r"\Z", re.DOTALL)
+        return re.compile("(.*?)".join(fixed) + r"\Z", re.DOTALL)
 
     ordered = sorted(_catalogue.sentences().items(), key=lambda pair: -len(_SLOT.sub("", pair[0])))
     return tuple((pattern(source), tuple(_SLOT.findall(source)), target) for source, target in ordered)
@@ -82,6 +83,11 @@ def say(sentence: str) -> str:
         if found:
             filled = target
             for name, value in zip(names, found.groups(), strict=True):
-                filled = filled.replace(f"{{{name}}}", _(value))
+                filled = filled.replace(f"{{{name}}}", _slot(value))
             return filled
     return sentence
+
+
+def _slot(value: str) -> str:
+    """What stands in a slot: a number with the decimal mark of the language, else a part of a sentence."""
+    return value.replace(".", ",") if _NUMBER.fullmatch(value) else say(value)

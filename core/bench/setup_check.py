@@ -79,7 +79,7 @@ def allowed(description: Description) -> str:
     """What a value may be, in words."""
     unit = f" {description.unit}" if description.unit else ""
     if description.kind == "choice":
-        return "one of " + ", ".join(description.choices)
+        return f"one of {', '.join(description.choices)}"
     if description.kind == "text":
         return f"a text of 1 to {LONGEST_TEXT} characters in quotes"
     if description.low is None or description.high is None:
@@ -87,9 +87,8 @@ def allowed(description: Description) -> str:
     span = f"from {description.low:.10g} to {description.high:.10g}{unit}"
     if description.above_low:
         span = f"above {description.low:.10g} and up to {description.high:.10g}{unit}"
-    return {"integer": "a whole number ", "numbers": "a list of numbers, each "}.get(
-        description.kind, "a number "
-    ) + span
+    whole, each = f"a whole number {span}", f"a list of numbers, each {span}"
+    return {"integer": whole, "numbers": each}.get(description.kind, f"a number {span}")
 
 
 def _kind_of(value: object) -> str:

@@ -50,7 +50,7 @@ class HandoverScreen(Page):
         session = self.model.session
         count = sum(not run.open for run in session.runs) if session else 0
         self.has_runs = count > 0
-        self.session_text = _("{title}: {count} runs").format(title=session.title, count=count) if session else ""
+        self.session_text = _("{title} · runs: {count}").format(title=session.title, count=count) if session else ""
         self.written_text = self.fault_text = self.share_told = ""
         self.choosing = False
         self.ready = False
@@ -185,7 +185,7 @@ class HandoverScreen(Page):
         if status.locked:
             self.share_told = _("Locked after five wrong codes. Ask for a new code to go on.")
         elif status.fetched:
-            self.share_told = _("Fetched {count} times.").format(count=status.fetched)
+            self.share_told = _("Fetched so far: {count}.").format(count=status.fetched)
         elif status.wrong:
             self.share_told = _("Wrong codes so far: {count}.").format(count=status.wrong)
         else:

@@ -10,6 +10,7 @@ from pathlib import Path
 import pytest
 from fontTools.ttLib import TTFont
 
+from core.bench.setup_check import descriptions, value_fault
 from mobileapp import words
 
 ROOT = Path(__file__).resolve().parents[2]
@@ -62,8 +63,20 @@ def test_a_finished_sentence_of_the_core_is_translated_with_its_numbers(german):
     source = next(text for text in german if text.startswith("The air changed by {0} K"))
     words.use("de")
     spoken = words.say(source.replace("{0}", "+1.7"))
-    assert spoken == german[source].replace("{0}", "+1.7")
+    assert spoken == german[source].replace("{0}", "+1,7")
     assert spoken != source
+
+
+def test_what_the_checks_of_a_set_up_say_is_translated_to_the_last_part():
+    description = descriptions("body")["diameter_m"]
+    words.use("de")
+    assert words.say(value_fault(description, 16.0)).startswith("ist 16, gebraucht wird eine Zahl von 0,")
+    assert words.say(value_fault(description, "x")).startswith("ist der Text 'x', gebraucht wird eine Zahl")
+
+
+def test_the_sources_of_limits_are_translated():
+    words.use("de")
+    assert words.say("common practice: at most one reading in ten") == "üblich: höchstens eine von zehn Ablesungen"
 
 
 def test_an_unknown_sentence_is_shown_as_it_stands():
