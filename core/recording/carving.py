@@ -10,8 +10,8 @@ import re
 import struct
 import sys
 from collections import defaultdict
-from collections.abc import Iterable, Iterator
-from dataclasses import dataclass
+from collections.abc import Iterable, Iterator, Mapping
+from dataclasses import dataclass, replace
 from pathlib import Path
 
 from core.errors import JournalFault
@@ -64,12 +64,14 @@ def found(main: bytes, log: bytes) -> Iterator[Line]:
 def prove(lines: Iterable[Line]) -> Carved:
     """The events whose checksums fit one to the other, and those after a gap that can be read.
 
-    Of two readings of one event the one is taken that fits its neighbours."""
+    Of two readings of one event the one is taken that fits its neighbours. One whose number is damaged goes to the
+    gap that it fits into."""
     by_number: dict[int, list[Line]] = defaultdict(list)
     for line in dict.fromkeys(lines):
         by_number[line.number].append(line)
     numbers = sorted(by_number)
     saved: list[Line] = []
+    gaps: dict[int, set[str]] = {}
     befores, previous, unproven, lost = {SEED}, 0, 0, 0
     for place, number in enumerate(numbers):
         choices = by_number[number]
@@ -81,18 +83,36 @@ def prove(lines: Iterable[Line]) -> Carved:
             gap = 0
             pick = max(proven, key=lambda one: any(_link(one.chain, later) == later.chain for later in after))
         else:
+            home = _in_a_gap(choices, gaps) if gap else None
+            if home is not None:
+                saved.append(home)
+                del gaps[home.number]
+                lost -= 1
+                continue
             held = [one for one in choices if _fits_between(one, befores, after)]
             gap = 0 if held else gap
             unchecked = choices if number - previous > 1 else []
             pick = next((one for one in held + unchecked if _is_event(one)), None)
             unproven += pick is not None and not held
+        if gap == 1:
+            gaps[number - 1] = befores
         lost += gap + (pick is None)
         ends = {one.chain for one in choices}
         befores = ends if proven else ends | {_link(before, one) for before in befores for one in choices}
         if pick is not None:
             saved.append(pick)
         previous = number
-    return Carved(tuple(saved), unproven, lost)
+    return Carved(tuple(sorted(saved, key=lambda one: one.number)), unproven, lost)
+
+
+def _in_a_gap(choices: Iterable[Line], gaps: Mapping[int, set[str]]) -> Line | None:
+    """An event under the number that its checksum proves, if that number is missing."""
+    for one in choices:
+        for number, befores in gaps.items():
+            there = replace(one, number=number)
+            if any(_link(before, there) == there.chain for before in befores):
+                return there
+    return None
 
 
 def newest_version(main: bytes, log: bytes, application_id: int) -> int:

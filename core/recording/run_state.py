@@ -2,6 +2,7 @@
 
 from __future__ import annotations
 
+import math
 from collections.abc import Sequence
 from dataclasses import dataclass, replace
 
@@ -126,11 +127,7 @@ def advance(state: RunState, events: Sequence[Kept], resolution_K: float) -> Run
     event, rows = new.event, state.rows
     if not isinstance(event, Tapped | Typed) or not rows or event.stamp_s - rows[-1].stamp_s < SAME_MOMENT_S:
         return derive(events, resolution_K)
-    if isinstance(event, Typed):
-        reading = event.reading_C
-    else:
-        reading = step_down(rows[-1].reading_C, event.steps, resolution_K)
-    row = Row(event.stamp_s, reading, new.number)
+    row = Row(event.stamp_s, _reading_C(event, rows[-1].reading_C, resolution_K), new.number)
     return replace(state, rows=(*rows, row), undoable=(*state.undoable, new.number))
 
 
@@ -139,16 +136,19 @@ def _rows(entries: Sequence[Kept], resolution_K: float) -> tuple[Row, ...]:
     timed.sort(key=lambda pair: (pair[0].stamp_s, pair[1]))
     rows: list[Row] = []
     for event, number in timed:
-        if isinstance(event, Typed):
-            reading = event.reading_C
-        elif rows:
-            reading = step_down(rows[-1].reading_C, event.steps, resolution_K)
-        else:
+        if isinstance(event, Tapped) and not rows:
             continue
+        reading = _reading_C(event, rows[-1].reading_C if rows else math.nan, resolution_K)
         if rows and event.stamp_s - rows[-1].stamp_s < SAME_MOMENT_S:
             rows.pop()
         rows.append(Row(event.stamp_s, reading, number))
     return tuple(rows)
+
+
+def _reading_C(event: Tapped | Typed, before_C: float, resolution_K: float) -> float:
+    if isinstance(event, Typed):
+        return event.reading_C
+    return step_down(before_C, event.steps, resolution_K)
 
 
 def step_down(reading_C: float, steps: int, resolution_K: float) -> float:

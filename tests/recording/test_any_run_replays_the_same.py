@@ -38,7 +38,7 @@ def act(tally, what, moment, value):
     return getattr(tally, what)(moment)
 
 
-@settings(deadline=None, max_examples=300)
+@settings(deadline=None, max_examples=150)
 @given(st.lists(inputs, max_size=40), st.integers(0, 40))
 def test_events_alone_give_the_run_again(steps, stopped_at):
     """Derived at once, derived tap by tap, or taken up in the middle by a fresh tally: one run; times rise."""

@@ -2,12 +2,13 @@
 
 import random
 import shutil
+from dataclasses import replace
 
 import pytest
 
 from core.errors import JournalFault
 from core.recording import recovery
-from core.recording.carving import carve
+from core.recording.carving import carve, prove
 from core.recording.events import Decided, RunOpened, SessionOpened, to_text
 from core.recording.journal import FILE_NAME
 from core.recording.opening import open_journal
@@ -81,13 +82,15 @@ def test_a_log_left_by_a_kill_is_carved_with_the_file(tmp_path):
     assert find_damage(tmp_path / FILE_NAME) is None
 
 
-def test_any_flipped_bit_is_noticed_or_harms_nothing(closed):
-    """Sixty bits flipped at random places: what is then read is the truth, or part of it with a report."""
-    path, events = closed
+def flip_bits(path, events, seed, count):
+    """Flip so many bits, one at a time; how many were noticed and how many events were lost in all.
+
+    What is read is the truth each time, or a part of it with a report that counts what is missing."""
     truth = {one.number: one for one in events}
     whole = path.read_bytes()
-    chance = random.Random(5)
-    for _ in range(60):
+    chance = random.Random(seed)
+    noticed, lost = 0, 0
+    for _ in range(count):
         data = bytearray(whole)
         place = chance.randrange(len(data))
         data[place] ^= 1 << chance.randrange(8)
@@ -98,8 +101,17 @@ def test_any_flipped_bit_is_noticed_or_harms_nothing(closed):
         else:
             assert all(truth.get(one.number) == one or made_up(one) for one in read), place
             assert len(events) - len(read) <= report.lost <= 3
+            noticed, lost = noticed + 1, lost + report.lost
         for one in path.parent.glob("journal-damaged-*"):
             one.unlink()
+    return noticed, lost
+
+
+def test_any_flipped_bit_is_noticed_or_harms_nothing(closed):
+    """At random places in a sound file."""
+    path, events = closed
+    noticed, _ = flip_bits(path, events, seed=5, count=15)
+    assert noticed >= 5
 
 
 @pytest.mark.parametrize("page", range(8))
@@ -165,6 +177,17 @@ def test_a_checksum_that_is_damaged_alone_costs_nothing(closed):
     read, report = reopened(path)
     assert report is not None
     assert read == events
+
+
+@pytest.mark.parametrize("number", [40, 200])
+def test_an_event_whose_number_is_damaged_goes_back_to_its_place(closed, number):
+    """Its checksum tells which number it had."""
+    path, _ = closed
+    sound = carve(path).lines
+    wrong = [replace(one, number=8561) if one.number == number else one for one in sound]
+    carved = prove(wrong)
+    assert carved.lines == sound
+    assert (carved.lost, carved.unproven) == (0, 0)
 
 
 def test_a_log_damaged_in_its_middle_loses_nothing(tmp_path):
