@@ -152,6 +152,13 @@ def _choice(changes: float, promises: dict[str, Promise], U95: dict[str, float])
     words = {"change": "a tap at each change", "beat": "readings on a beat"}
     return better, (
         f"The readings alone give h to ± {2 * min(tap, beat):.2f} % with {words[better]}, {gain:.1f} times closer "
-        f"than with {words[worse]} (± {2 * max(tap, beat):.2f} %); with the whole budget U95 is "
-        f"{100 * U95[better]:.1f} %, not {100 * U95[worse]:.1f} %."
+        f"than with {words[worse]} (± {2 * max(tap, beat):.2f} %); {_whole_budget(U95[better], U95[worse])}."
     )
+
+
+def _whole_budget(better: float, worse: float) -> str:
+    """What the choice of the mode does to the whole U95, in words."""
+    kept, other = f"{100 * better:.1f} %", f"{100 * worse:.1f} %"
+    if kept == other:
+        return f"with the whole budget U95 is {kept} either way"
+    return f"with the whole budget U95 is {kept}, not {other}"
