@@ -17,6 +17,7 @@ import sys
 import tempfile
 import time
 from collections.abc import Callable
+from concurrent.futures import ThreadPoolExecutor
 from dataclasses import dataclass, replace
 from pathlib import Path
 
@@ -390,15 +391,13 @@ class Gallery:
         return faults
 
 
-def main() -> None:
-    arguments = _arguments()
-    out = arguments.out.resolve()
-    os.chdir(ROOT)
+def draw(arguments: argparse.Namespace, out: Path) -> dict[str, dict[str, list[str]]]:
+    """All variants of one size, in this process."""
     _prepare(arguments)
     gallery = Gallery(float(arguments.density))
     wanted = [name for name in SCREENS if not arguments.only or name in arguments.only.split(",")]
-    found: dict[str, dict[str, list[str]]] = {}
     empty = [name for name in wanted if name.endswith("-empty")]
+    found: dict[str, dict[str, list[str]]] = {}
     for names in (empty, [name for name in wanted if name not in empty]):
         if names and names is not empty:
             gallery.fill()
@@ -407,13 +406,38 @@ def main() -> None:
             folder = out / words.replace("/", "_")
             folder.mkdir(parents=True, exist_ok=True)
             for name in names:
-                if not (ROOT / "mobileapp" / "screens" / f"{name.partition('-')[0]}.kv").is_file():
-                    continue
                 page = gallery.stage(name)
                 gallery.picture(folder / f"{name}.png")
                 found.setdefault(words, {})[name] = gallery.faults(page)
                 gallery.put_away()
     gallery.model.close()
+    return found
+
+
+def draw_apart(arguments: argparse.Namespace, out: Path, sizes: list[str]) -> dict[str, dict[str, list[str]]]:
+    """Each size in a process of its own, since a window without a screen cannot grow; two at a time."""
+
+    def one(size: str) -> dict[str, dict[str, list[str]]]:
+        variants = [words for words in arguments.variants if words.startswith(size)]
+        command = [sys.executable, __file__, str(out), *variants, "--density", arguments.density]
+        told = subprocess.run([*command, "--only", arguments.only], capture_output=True, text=True, check=False)
+        if told.returncode:
+            raise RuntimeError(told.stderr[-2000:])
+        return dict(json.loads(told.stdout.splitlines()[-1]))
+
+    found: dict[str, dict[str, list[str]]] = {}
+    with ThreadPoolExecutor(2) as pool:
+        for part in pool.map(one, sizes):
+            found |= part
+    return found
+
+
+def main() -> None:
+    arguments = _arguments()
+    out = arguments.out.resolve()
+    os.chdir(ROOT)
+    sizes = sorted({words.split("/")[0] for words in arguments.variants})
+    found = draw(arguments, out) if len(sizes) == 1 else draw_apart(arguments, out, sizes)
     if arguments.sheet:
         pictures = sorted(str(path) for path in out.glob("*/*.png"))
         tiles = ["-tile", "8x", "-geometry", "420x420+6+6", "-background", "#888888"]

@@ -39,12 +39,14 @@ def test_every_tap_is_counted_once(rehearsed):
 
 
 def test_a_tap_is_stamped_when_it_was_made(rehearsed):
-    """The stamps of the record are those of the pointer events, within a few milliseconds, while fits run."""
+    """While fits run, the stamps of the record are those of the pointer events: half of them within 2 ms of the
+    sending, none before it and none after the confirmation (the machine itself may stall in between)."""
     app, sent, _answer = rehearsed
     counted = [one for one in app.named("tap") if one["reading"] is not None]
     errors_s = sorted(abs(one["stamp"] - moment) for one, moment in zip(counted, sent, strict=True))
     assert errors_s[len(errors_s) // 2] < 0.002
-    assert errors_s[int(0.9 * len(errors_s))] < 0.010  # the machine itself may stall
+    for one, moment in zip(counted, sent, strict=True):
+        assert moment - 0.001 <= one["stamp"] <= one["t"]
 
 
 def test_h_lies_within_its_uncertainty_of_the_truth(rehearsed):
@@ -52,10 +54,10 @@ def test_h_lies_within_its_uncertainty_of_the_truth(rehearsed):
     assert abs(answer["h"] - truth_of(app)) <= answer["U95"]
 
 
-def test_the_exported_folder_fits_to_the_number_shown(rehearsed, tmp_path):
+def test_the_exported_folder_fits_to_the_number_shown(rehearsed):
     """What the journal holds, exported and fitted by the command, is the app's answer to the last digit."""
     app, _sent, answer = rehearsed
-    folder = _exported(app, tmp_path)
+    folder = _exported(app)
     told = subprocess.run([*CORE_FIT, str(folder), "--json"], cwd=ROOT, capture_output=True, text=True, check=True)
     fitted = json.loads(told.stdout.splitlines()[-1])
     assert fitted["h_W_m2K"] == answer["h"]
@@ -63,12 +65,12 @@ def test_the_exported_folder_fits_to_the_number_shown(rehearsed, tmp_path):
     assert fitted["verdict"] == answer["verdict"]
 
 
-def _exported(app, tmp_path: Path) -> Path:
+def _exported(app) -> Path:
     """By the app's own screen where it hands over into a folder."""
     app.press("←")
     app.wait_for("screen", lambda one: one["name"] == "home")
     app.wait_for("targets")
     app.go("Hand over", "handover")
-    app.press("Export")
-    told = app.wait_for("exported")
-    return Path(told["folder"])
+    app.press("Write the session there")
+    app.wait_for("handed over")
+    return next(app.folder.rglob("runs.csv")).parent
