@@ -88,6 +88,7 @@ def prove(lines: Iterable[Line]) -> Carved:
                 saved.append(home)
                 del gaps[home.number]
                 lost -= 1
+                unproven -= any(_link(home.chain, one) == one.chain for one in by_number[home.number + 1])
                 continue
             held = [one for one in choices if _fits_between(one, befores, after)]
             gap = 0 if held else gap

@@ -112,7 +112,7 @@ class Tally:
         """The run starts: the display shows `reading_C` [°C] at the stamp [s]."""
         if self.state.rows:
             return Refused("early", "The run has its first reading already.")
-        return self.typed(reading_C, stamp_s)
+        return self._not_now(stamp_s, contact=True) or self.typed(reading_C, stamp_s)
 
     def tap(self, stamp_s: float, steps: int = 1) -> Confirmed | Refused:
         """The display went down by `steps` of its resolution at the stamp [s]."""

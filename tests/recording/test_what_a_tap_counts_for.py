@@ -77,6 +77,14 @@ def test_a_palm_counts_once_and_ten_taps_a_second_all_count(tally):
     assert tally.view.readings == 42
 
 
+def test_a_palm_that_starts_the_run_counts_once(tally):
+    """The touch of the first number is a touch like any other."""
+    answer = tally.tap(100.005)
+    assert isinstance(answer, Refused)
+    assert answer.reason == "contact"
+    assert tally.view.readings == 1
+
+
 def test_a_stamp_that_goes_back_is_refused(tally):
     """A tap belongs after the last reading."""
     tally.tap(105.0)
