@@ -58,6 +58,9 @@ def gather(
     bins = bins_of(readings, setup)
     blur = blur_of(readings, setup)
     counts = np.arange(len(readings)) >= start_row
+    placed = setup.recording.mode == "change" and bool(counts[0])
+    if setup.recording.mode == "beat":
+        counts &= bins.time_s >= min(blur.refresh_s, bins.time_s[-1] / 4)
     certain = np.zeros(len(readings), dtype=bool)
     for ruling in rulings:
         if start_row <= ruling.row < len(readings):
@@ -75,7 +78,7 @@ def gather(
         counts=counts,
         certain=certain,
         start_C=float((bins.lower_C[0] + bins.upper_C[0]) / 2.0),
-        start_u_K=start_u if setup.recording.mode == "change" and counts[0] else NO_WORD_K,
+        start_u_K=start_u if placed else NO_WORD_K,
     )
 
 

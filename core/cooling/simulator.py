@@ -15,11 +15,11 @@ from numpy.typing import NDArray
 from core.bench.body import thermal_body
 from core.bench.readings import Readings
 from core.bench.setup import Setup
-from core.cooling.finite_volume import MIDDLE_C, Decay, decay_in
+from core.cooling.conducting_body import Face, Outside, conducting_course
+from core.cooling.finite_volume import MIDDLE_C, decay_in
 
 Array = NDArray[np.float64]
 
-STEFAN_BOLTZMANN_W_M2K4 = 5.670374419e-8  # CODATA 2018
 STEPS_PER_TIME_CONSTANT = 250
 CONDUCTING = 0.03  # Biot number (half thickness) above which all modes of conduction are followed
 STILL_AIR_SHARE = 0.12  # of the forced coefficient, before the fan has run up
@@ -31,8 +31,9 @@ class Truth:
 
     `h_W_m2K` is the coefficient at the velocity before the run; while the velocity creeps by `creep_rel` over the
     run, h follows with the power `exponent`. In a still-air run it is that of natural convection at the start, and
-    goes with θ^(1/4). The fan runs up with the time constant `fan_run_up_s` after `fan_late_s`.
-    `thermometer_offset_K` is how much the body's thermometer reads above the air's."""
+    goes with θ^(1/4), unless `natural_W_m2K` gives it for body and air [°C]. The fan runs up with the time constant
+    `fan_run_up_s` after `fan_late_s`. `thermometer_offset_K` is how much the body's thermometer reads above the
+    air's."""
 
     setup: Setup
     h_W_m2K: float
@@ -43,6 +44,7 @@ class Truth:
     fan_run_up_s: float = 0.0
     fan_late_s: float = 0.0
     thermometer_offset_K: float = 0.0
+    natural_W_m2K: Callable[[float, float], float] | None = None
 
 
 @dataclass(frozen=True, slots=True)
@@ -71,53 +73,46 @@ class Course:
         return result
 
 
+def _pace(truth: Truth) -> tuple[float, float, float]:
+    """Whole coefficient [W/(m²·K)], the share of it that conduction inside leaves, time constant [s]."""
+    body = thermal_body(truth.setup.body)
+    air_C = truth.setup.air.temperature_C
+    whole = _whole_W_m2K(truth, body.area_m2, air_C + 0.45 * (truth.start_C - air_C))
+    capacity = body.capacity_J_K(MIDDLE_C)
+    tau = 1.0 / float(decay_in(truth.setup.body, body, whole).rate_s[0])
+    return whole, capacity / (tau * whole * body.area_m2), tau
+
+
+def planned_s(truth: Truth) -> float:
+    """About how long the cooling takes [s]: the time in which air and velocity go all their way."""
+    air = truth.setup.air.temperature_C
+    excess = max(truth.start_C - air, 1.0) / max(truth.end_C - air, 0.5)
+    return _pace(truth)[2] * log(excess) + truth.fan_late_s
+
+
 def cool(truth: Truth) -> Course:
-    """Integrate the body and its sensor from the start to the end temperature, by Runge–Kutta of fourth order."""
+    """The course of a truth from the start to the end temperature.
+
+    Runge–Kutta of fourth order for a body at one temperature, finite volumes for one with differences inside."""
     setup = truth.setup
     body = thermal_body(setup.body)
     area, lag = body.area_m2, setup.thermometer.lag_s
-    air0 = setup.air.temperature_C
-    air1 = air0 if setup.air.temperature_end_C is None else setup.air.temperature_end_C
-    capacity = body.capacity_J_K(MIDDLE_C)
-    middle_C = air0 + 0.45 * (truth.start_C - air0)
-    whole = truth.h_W_m2K + setup.body.stem_loss_W_K / area + _radiation_W_m2K(setup, middle_C)
-    decay = decay_in(setup.body, body, whole)
-    inside = float(decay.rate_s[0]) * capacity / (whole * area)
-    tau = capacity / (inside * whole * area)
+    whole, inside, tau = _pace(truth)
+    length = planned_s(truth)
+    outside = _outside(truth, area, length)
     if whole * body.half_thickness_m / body.conductivity_W_mK > CONDUCTING:
-        return _conducting(truth, decay, tau)
-    length = tau * log(max(truth.start_C - air0, 1.0) / max(truth.end_C - air0, 0.5)) + truth.fan_late_s
-    still = setup.recording.kind == "still-air"
-    step = min(tau / STEPS_PER_TIME_CONSTANT, lag / 5.0 if lag > 0.0 else 1e9)
-
-    def coefficient(time_s: float) -> float:
-        creep = (1.0 + truth.creep_rel * min(time_s / length, 1.0)) ** truth.exponent
-        since = time_s - truth.fan_late_s
-        if since < 0.0:
-            share = STILL_AIR_SHARE
-        elif truth.fan_run_up_s > 0.0:
-            share = 1.0 - (1.0 - STILL_AIR_SHARE) * exp(-since / truth.fan_run_up_s)
-        else:
-            share = 1.0
-        return float(truth.h_W_m2K * creep * share)
+        step, shown = conducting_course(setup.body, body, outside, truth.start_C, truth.end_C, lag, tau)
+        return Course(step, shown + truth.thermometer_offset_K, np.gradient(shown, step, edge_order=2))
 
     def rate(time_s: float, body_C: float, sensor_C: float) -> tuple[float, float]:
-        air = air0 + (air1 - air0) * min(time_s / length, 1.5)
-        walls = air0 if setup.air.surroundings_C is None else setup.air.surroundings_C
-        natural = max((body_C - air) / (truth.start_C - air0), 0.0) ** 0.25 if still else 1.0
-        watts = (coefficient(time_s) * natural * area + setup.body.stem_loss_W_K) * (body_C - air)
-        watts += (
-            setup.body.emissivity
-            * STEFAN_BOLTZMANN_W_M2K4
-            * area
-            * ((body_C + 273.15) ** 4 - (walls + 273.15) ** 4)
-        )
+        watts = outside.face_at(time_s, body_C).loss_W_m2(body_C) * area
         own = -inside * watts / body.capacity_J_K(body_C)
         return own, (body_C - sensor_C) / lag if lag > 0.0 else own
 
+    step = min(tau / STEPS_PER_TIME_CONSTANT, lag / 5.0 if lag > 0.0 else 1e9)
     body_C = sensor_C = truth.start_C
     time = 0.0
-    shown, rates = [sensor_C], [rate(0.0, body_C, sensor_C)[1]]
+    read, rates = [sensor_C], [rate(0.0, body_C, sensor_C)[1]]
     while sensor_C > truth.end_C - 0.5 and time < 3.0 * length + 30.0:
         a, p = rate(time, body_C, sensor_C)
         b, q = rate(time + step / 2, body_C + step / 2 * a, sensor_C + step / 2 * p)
@@ -126,26 +121,47 @@ def cool(truth: Truth) -> Course:
         body_C += step / 6 * (a + 2 * b + 2 * c + d)
         sensor_C += step / 6 * (p + 2 * q + 2 * r + s)
         time += step
-        shown.append(sensor_C)
+        read.append(sensor_C)
         rates.append(rate(time, body_C, sensor_C)[1])
-    return Course(step, np.array(shown) + truth.thermometer_offset_K, np.array(rates))
+    return Course(step, np.array(read) + truth.thermometer_offset_K, np.array(rates))
 
 
-def _radiation_W_m2K(setup: Setup, body_C: float) -> float:
-    walls = setup.air.temperature_C if setup.air.surroundings_C is None else setup.air.surroundings_C
-    fourth = (body_C + 273.15) ** 4 - (walls + 273.15) ** 4
-    return setup.body.emissivity * STEFAN_BOLTZMANN_W_M2K4 * fourth / (body_C - setup.air.temperature_C)
+def _whole_W_m2K(truth: Truth, area_m2: float, middle_C: float) -> float:
+    """Convection, stem and radiation together, over the excess above the air, about half-way."""
+    air = truth.setup.air
+    walls = air.temperature_C if air.surroundings_C is None else air.surroundings_C
+    radiated = Face(0.0, 0.0, walls, truth.setup.body.emissivity).loss_W_m2(middle_C)
+    stem = truth.setup.body.stem_loss_W_K / area_m2
+    return truth.h_W_m2K + stem + radiated / (middle_C - air.temperature_C)
 
 
-def _conducting(truth: Truth, decay: Decay, tau_s: float) -> Course:
-    """A body with steep temperature inside: all modes, at a steady coefficient in steady air."""
-    air = truth.setup.air.temperature_C
-    step = tau_s / STEPS_PER_TIME_CONSTANT / 4.0
-    length = 1.3 * tau_s * log(max(truth.start_C - air, 1.0) / max(truth.end_C - air, 0.5))
-    time = np.arange(0.0, length, step)
-    excess = truth.start_C - air
-    shown = air + excess * decay.at(time) / float(np.sum(decay.share)) + truth.thermometer_offset_K
-    return Course(step, shown, excess * decay.slope_at(time))
+def _outside(truth: Truth, area_m2: float, length_s: float) -> Outside:
+    """What the body stands in over a run of about this length."""
+    setup = truth.setup
+    air = setup.air
+    drift = 0.0 if air.temperature_end_C is None else air.temperature_end_C - air.temperature_C
+
+    def coefficient(time_s: float, body_C: float, air_C: float) -> float:
+        if setup.recording.kind == "still-air":
+            if truth.natural_W_m2K is not None:
+                return truth.natural_W_m2K(body_C, air_C)
+            return float(truth.h_W_m2K * max((body_C - air_C) / (truth.start_C - air.temperature_C), 0.0) ** 0.25)
+        creep = (1.0 + truth.creep_rel * min(time_s / length_s, 1.0)) ** truth.exponent
+        since = time_s - truth.fan_late_s
+        share = 1.0
+        if since < 0.0:
+            share = STILL_AIR_SHARE
+        elif truth.fan_run_up_s > 0.0:
+            share = 1.0 - (1.0 - STILL_AIR_SHARE) * exp(-since / truth.fan_run_up_s)
+        return float(truth.h_W_m2K * creep * share)
+
+    return Outside(
+        coefficient_W_m2K=coefficient,
+        air_C=lambda time_s: air.temperature_C + drift * min(time_s / length_s, 1.5),
+        lost_W_m2K=setup.body.stem_loss_W_K / area_m2,
+        walls_C=air.temperature_C if air.surroundings_C is None else air.surroundings_C,
+        emissivity=setup.body.emissivity,
+    )
 
 
 @dataclass(frozen=True, slots=True)

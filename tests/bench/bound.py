@@ -20,7 +20,6 @@ class Courses:
     """Temperatures, crossings and their derivatives by ln h, start and asymptote for one truth."""
 
     def __init__(self, truth):
-        truth = replace(truth, end_C=truth.end_C - 3.0 * truth.setup.thermometer.resolution_K)
         self.middle = cool(truth)
         self.around = [(cool(self._moved(truth, k, step)), cool(self._moved(truth, k, -step)))
                        for k, step in enumerate(STEPS)]  # fmt: skip

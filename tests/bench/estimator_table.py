@@ -22,9 +22,10 @@ def one_run(task):
     """Relative error of h, its stated standard uncertainty and the rivals' errors for one run."""
     scenario = SCENARIOS[task[0]]
     readings = scenario.run(task[1])
-    fit = fit_cooling(readings, scenario.setup)
+    setup = scenario.noted(readings, task[1])
+    fit = fit_cooling(readings, setup)
     h = scenario.h_W_m2K
-    errors = [rival(scenario.setup, readings) / h - 1.0 for rival in RIVALS]
+    errors = [rival(setup, readings) / h - 1.0 for rival in RIVALS]
     starts = sum(one.cause == "start" for one in fit.left_out)
     return [fit.h_W_m2K / h - 1.0, fit.h_u_W_m2K / h, *errors, starts, len(fit.left_out) - starts, len(readings)]
 

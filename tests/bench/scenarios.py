@@ -4,10 +4,12 @@ from dataclasses import dataclass, replace
 
 import numpy as np
 
+from core.bench.readings import Readings
 from core.bench.setup import Body, Flow, Recording, Setup, Surrounding, Thermometer
-from core.cooling.simulator import Hand, Truth, simulate
+from core.cooling.simulator import Hand, Truth, planned_s, simulate
 
 AIR_C = 23.0
+END_C = 33.0
 ROD = Body("cylinder", diameter_m=0.016, length_m=0.11, material="brass", emissivity=0.05)
 DARK = replace(ROD, emissivity=0.85)
 HELD = replace(ROD, stem_loss_W_K=0.02)
@@ -30,11 +32,23 @@ class Scenario:
         rng = np.random.default_rng((seed, 77))
         start = 90.0 + self.setup.thermometer.resolution_K * rng.uniform(-0.5, 0.5)
         offset = self.setup.air.temperature_u_K * rng.normal()
-        return Truth(self.setup, self.h_W_m2K, start_C=start + offset, thermometer_offset_K=-offset)
+        end = END_C - max(3.0 * self.setup.thermometer.resolution_K, 1.0)
+        return Truth(self.setup, self.h_W_m2K, start + offset, end, thermometer_offset_K=-offset)
 
-    def run(self, seed: int, hand: Hand | None = None):
-        """One run's readings."""
-        return simulate(self.truth(seed), seed, hand)
+    def run(self, seed: int, hand: Hand | None = None) -> Readings:
+        """One run's readings: the person stops at the first number that is no higher than the end."""
+        whole = simulate(self.truth(seed), seed, hand)
+        stop = next(k for k, shown in enumerate(whole.reading_C) if shown <= END_C) + 1
+        return Readings(whole.time_s[:stop], whole.reading_C[:stop])
+
+    def noted(self, readings: Readings, seed: int) -> Setup:
+        """The set-up as the person has it after that run: the air measured when it ended."""
+        air = self.setup.air
+        if air.temperature_end_C is None:
+            return self.setup
+        gone = readings.time_s[-1] / planned_s(self.truth(seed))
+        end = air.temperature_C + (air.temperature_end_C - air.temperature_C) * gone
+        return replace(self.setup, air=replace(air, temperature_end_C=end))
 
 
 def _bench(name, body=ROD, h=90.0, air_end=None, **rest):
