@@ -186,7 +186,7 @@ FAULTS = {
     "rounding set wrong": _fault(rounding_wrong, "asymptote"),
     "too short a run": _fault(too_short, "temperature span"),
     "dark surface set shiny": _fault(dark_set_shiny, "asymptote", "earlier runs", "expected h"),
-    "inlet blocked half way": _fault(blocked_inlet, "residual pattern", "asymptote"),
+    "inlet blocked half way": _fault(blocked_inlet, "residual pattern", "asymptote", "start"),
     "refresh set wrong": _fault(refresh_wrong, "display refresh"),
     "display step set wrong": _fault(step_wrong, "display step"),
 }
