@@ -2,6 +2,7 @@
 
 from __future__ import annotations
 
+from collections.abc import Sequence
 from pathlib import Path
 from typing import Any
 
@@ -29,6 +30,7 @@ OFFERED: dict[str, tuple[str, ...]] = {
     "Pa": ("Pa", "hPa", "mmH2O", "inH2O"),
     "": ("%", ""),
 }
+BOLD_WIDTH = 0.7  # mean width of a bold letter, in sizes of the type
 EVERYDAY = {
     "pressure_Pa": ("hPa", "Pa", "mmHg", "inHg"),
     "pressure_u_Pa": ("hPa", "Pa", "mmHg", "inHg"),
@@ -51,9 +53,10 @@ def from_si(value: float, si_unit: str, unit: str) -> float:
     return value / FACTORS.get(si_unit, {}).get(unit, 1.0)
 
 
-def columns_for(width: float, body: float, count: int) -> int:
-    """How many buttons of an ordinary word stand beside each other."""
-    return max(1, min(3, count, int(width // (body * 7.4))))
+def columns_for(width: float, body: float, buttons: Sequence[Any]) -> int:
+    """How many of these buttons stand beside each other without a word of theirs being split."""
+    longest = max((len(word) for button in buttons for word in button.text.split()), default=8)
+    return max(1, min(3, len(buttons), int(width // ((longest + 1.5) * body * BOLD_WIDTH))))
 
 
 class LineInput(TextInput):
