@@ -85,9 +85,12 @@ def _pace(truth: Truth) -> tuple[float, float, float]:
 
 def planned_s(truth: Truth) -> float:
     """About how long the cooling takes [s]: the time in which air and velocity go all their way."""
+    return _length_s(truth, _pace(truth)[2])
+
+
+def _length_s(truth: Truth, tau_s: float) -> float:
     air = truth.setup.air.temperature_C
-    excess = max(truth.start_C - air, 1.0) / max(truth.end_C - air, 0.5)
-    return _pace(truth)[2] * log(excess) + truth.fan_late_s
+    return tau_s * log(max(truth.start_C - air, 1.0) / max(truth.end_C - air, 0.5)) + truth.fan_late_s
 
 
 def cool(truth: Truth) -> Course:
@@ -98,7 +101,7 @@ def cool(truth: Truth) -> Course:
     body = thermal_body(setup.body)
     area, lag = body.area_m2, setup.thermometer.lag_s
     whole, inside, tau = _pace(truth)
-    length = planned_s(truth)
+    length = _length_s(truth, tau)
     outside = _outside(truth, area, length)
     if whole * body.half_thickness_m / body.conductivity_W_mK > CONDUCTING:
         step, shown = conducting_course(setup.body, body, outside, truth.start_C, truth.end_C, lag, tau)
