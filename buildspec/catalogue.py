@@ -30,7 +30,7 @@ CORE_SENTENCES = (
     "core/handover/share_server.py",
     "core/handover/sync.py",
 )
-CORE_PARTS = ("core/bench/setup_check.py", "core/cooling/diagnosis.py")
+CORE_PARTS = ("core/bench/setup_check.py", "core/cooling/diagnosis.py", "core/judgement/expect.py")
 CORE_WORDS = (
     "above", "below", "a tap at each change", "readings on a beat", "short-cylinder", "wall", "cylinder", "block",
     "sphere", "before the start that you set", "before the curve has settled",
@@ -38,7 +38,7 @@ CORE_WORDS = (
 _IN_KV = re.compile(r"""\b_\(\s*("(?:[^"\\]|\\.)*"|'(?:[^'\\]|\\.)*')\s*\)""")
 _SENTENCE = re.compile(r"(?=.*[a-z]{2}.*[a-z]{2})([A-Z{0-9']|h\s).*\s.*[.?!]\Z", re.DOTALL)
 _TEXT_ARGUMENT = {"Rule": 2, "Solid": 0}  # which argument is a text, in calls that make a rule or a solid
-_PART = re.compile(r"(a|above|and|does|from|holds|is|one of|Row|the|true|where) .*", re.DOTALL)
+_PART = re.compile(r"(a|above|and|does|from|holds|is|one of|Row|the|true|where|with) .*", re.DOTALL)
 
 
 def gather(root: Path = ROOT) -> dict[str, str]:

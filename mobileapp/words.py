@@ -13,7 +13,7 @@ from pathlib import Path
 LOCALE = Path(__file__).parent / "locale"
 LANGUAGES = {"en": "English", "de": "Deutsch"}
 _SLOT = re.compile(r"\{(\w*)\}")
-_NUMBER = re.compile(r"[+−-]?\d+\.\d+")
+_NUMBER = re.compile(r"[+−-]?\d+\.\d+( %)?")
 
 
 class _Catalogue:

@@ -10,9 +10,9 @@ from core.judgement.answer import Answer
 from core.judgement.improve import next_improvement
 from mobileapp.figures import number, percent, significant, with_uncertainty
 from mobileapp.judged import law_label, plus_minus
-from mobileapp.navigation import Page
 from mobileapp.widgets import badge, basics, decision, gauge, run_plots  # noqa: F401  the .kv of this screen uses them
 from mobileapp.widgets.badge import verdict_word
+from mobileapp.widgets.beside import PicturePage
 from mobileapp.widgets.findings import BudgetBar, CheckLine, DoubtLine, ValueLine
 from mobileapp.widgets.gauge import Span
 from mobileapp.words import _, say
@@ -21,7 +21,7 @@ WORST_FIRST = {"again": 0, "look": 1, "good": 2}
 SHARE_SHOWN = 0.001  # shares of the variance below this are told in one line
 
 
-class DetailScreen(Page):
+class DetailScreen(PicturePage):
     """One run in full. What a person says here is an event; the answer is then worked out anew."""
 
     run = StringProperty("")

@@ -14,8 +14,9 @@ from core.handover.archive import zipped
 from core.handover.share_page import PageTexts
 from core.handover.share_server import ShareServer, local_address
 from core.handover.sync import Synced, sync_session
+from mobileapp.device.android_downloads import save_to_downloads
 from mobileapp.device.find import on_android
-from mobileapp.device.places import ANDROID_DOWNLOADS, find_places, save_to_downloads
+from mobileapp.device.places import ANDROID_DOWNLOADS, find_places
 from mobileapp.figures import clock_time
 from mobileapp.gathering import with_answers
 from mobileapp.navigation import Page

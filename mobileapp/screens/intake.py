@@ -8,7 +8,7 @@ from pathlib import Path
 from typing import Any
 
 from kivy.clock import Clock
-from kivy.properties import BooleanProperty, StringProperty
+from kivy.properties import BooleanProperty, NumericProperty, StringProperty
 
 from core.errors import BadReadings, BenchError
 from core.handover.csv_text import read_bytes
@@ -28,7 +28,7 @@ from mobileapp.words import _, say
 
 SUFFIXES = [".csv", ".txt", ".tsv", ".log", ".dat"]
 SHOWN_ROWS = 6
-SHOWN_COLUMNS = 8
+SHOWN_COLUMNS = 12
 LARGEST = 8_000_000  # bytes: some hundred thousand readings; more is for the laptop
 
 
@@ -46,6 +46,7 @@ class IntakeScreen(Page):
     export_here = BooleanProperty(False)
     clock = BooleanProperty(False)
     mode = StringProperty("change")
+    shown_columns = NumericProperty(1)
 
     def __init__(self, **options: Any) -> None:
         super().__init__(**options)
@@ -164,6 +165,7 @@ class IntakeScreen(Page):
 
     def _show_table(self, names: Sequence[str], rows: Sequence[Sequence[str]]) -> None:
         width = min(max((len(row) for row in rows), default=len(names)), SHOWN_COLUMNS)
+        self.shown_columns = width
         self._roles(width)
         columns = [
             Column(

@@ -12,9 +12,10 @@ from core.judgement.series import Series
 from mobileapp.figures import number, percent, significant, with_uncertainty
 from mobileapp.gathering import with_answers
 from mobileapp.judged import law_label, plus_minus
-from mobileapp.navigation import Page
+from mobileapp.theme import look
 from mobileapp.widgets import basics, plot  # noqa: F401  the .kv of this screen uses them
 from mobileapp.widgets.basics import ChoicePress
+from mobileapp.widgets.beside import PicturePage
 from mobileapp.widgets.findings import ValueLine
 from mobileapp.widgets.grid_table import Column
 from mobileapp.widgets.plot import Band, Curve, Marks, Note, Whisker
@@ -24,7 +25,7 @@ ROOM = 1.35  # the picture reaches so much beyond the slowest and the fastest ru
 COLOURS = ("cool", "look", "keep", "again")
 
 
-class SeriesScreen(Page):
+class SeriesScreen(PicturePage):
     """What the session has come to so far."""
 
     law_text = StringProperty("")
@@ -104,6 +105,7 @@ class SeriesScreen(Page):
     def _show_runs(self, series: Series) -> None:
         pairs_re = [with_uncertainty(run.reynolds, run.reynolds_u) for run in series.runs]
         pairs_nu = [with_uncertainty(run.nusselt, run.nusselt_u) for run in series.runs]
+        narrow = self.width < look.body * 26
         columns = [
             Column(_("run"), [run.run for run in series.runs], numeric=False),
             Column(_("m/s"), [number(run.velocity_m_s, 2) for run in series.runs]),
@@ -113,6 +115,8 @@ class SeriesScreen(Page):
             Column(_("u"), [u for _value, u in pairs_nu]),
             Column(_("off, %"), [number(100 * run.residual, 1) for run in series.runs]),
         ]
+        if narrow:
+            columns = [column for column in columns if column.heading != _("u")]
         by_number = {str(run.number): run.run for run in self.model.session.runs}
         self.ids.runs.show(columns, [by_number[run.run] for run in series.runs])
 
@@ -195,7 +199,7 @@ class SeriesScreen(Page):
         parts.append(Marks(list(zip(re, nu, strict=True)), "ember", "dot", 4.5))
         named = [band for band in self._bands if band.correlation in self._shown_bands]
         parts += [_note(band, 8 + 7 * i) for i, band in enumerate(named)]
-        self.ids.picture.show(*parts, view=(low, high, min(reach) / 1.05, max(reach) * 1.05))
+        self.ids.plane.show(*parts, view=(low, high, min(reach) / 1.05, max(reach) * 1.05))
 
     @staticmethod
     def _band_parts(band: LawBand, colour: str) -> list[Any]:

@@ -8,7 +8,7 @@ from typing import Any
 
 from kivy.lang import Builder
 from kivy.metrics import dp
-from kivy.properties import NumericProperty, ObjectProperty
+from kivy.properties import BooleanProperty, NumericProperty, ObjectProperty
 from kivy.uix.boxlayout import BoxLayout
 
 from core.bench.readings import Readings
@@ -60,6 +60,7 @@ class RunPlots(BoxLayout):
     """Curve and residuals, moved and zoomed together along the time; `picked` is the row that was touched."""
 
     picked = NumericProperty(-1)
+    movable = BooleanProperty(True)
     answer = ObjectProperty(None, allownone=True)
     __events__ = ("on_start_moved",)
 
