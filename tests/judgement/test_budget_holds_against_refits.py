@@ -62,9 +62,9 @@ STEEL = bench(
     flow={"velocity_m_s": 12.0},
 )
 INSIDE = {
-    "conductivity": ("conductivity_W_mK", 0.4),
-    "diameter": ("diameter_m", 2e-4),
-    "density": ("density_kg_m3", 40.0),
+    "conductivity": ("conductivity_W_mK", 1.5),
+    "diameter": ("diameter_m", 4e-4),
+    "density": ("density_kg_m3", 80.0),
 }
 
 
@@ -76,7 +76,8 @@ def steel():
 
 @pytest.mark.parametrize("name", INSIDE)
 def test_sensitivities_hold_with_conduction_inside_too(name):
-    """A steel rod of 40 mm, Bi 0.07 with volume over area: within 4 % of a refit."""
+    """A steel rod of 40 mm, Bi 0.07 with volume over area: within 6 % of a refit, whose h is itself good to 0.03 %
+    of h from one set-up to the next."""
     key, step = INSIDE[name]
     readings, fit = steel()
     assert fit.model != "lumped"
@@ -87,7 +88,7 @@ def test_sensitivities_hold_with_conduction_inside_too(name):
         fit_cooling(readings, with_(STEEL, "body", **{key: value + sign * step}), start_s=fit.window_s[0]).h_W_m2K
         for sign in (1.0, -1.0)
     )
-    assert budget.h.sensitivities[at] == pytest.approx((up - down) / (2 * step), rel=0.04)
+    assert budget.h.sensitivities[at] == pytest.approx((up - down) / (2 * step), rel=0.06)
 
 
 def test_a_thermometer_that_reads_high_as_the_air_does_hardly_moves_h():

@@ -17,10 +17,10 @@ WRITTEN = bench(
 
 
 def test_the_95_percent_interval_of_h_holds_the_truth_in_95_of_100_runs():
-    """100 runs, each with a rod, a stem, a thermometer and a hand of its own: 89 to 99 intervals hold the truth,
-    and the misses are spread as the stated uncertainty says."""
+    """60 runs, each with a rod, a stem, a thermometer and a hand of its own: 53 to 60 intervals hold the truth, as
+    a true 95 % would in 99 of 100 such trials, and the misses are spread as the stated uncertainty says."""
     body, misses = WRITTEN.body, []
-    for seed in range(100):
+    for seed in range(60):
         generator = np.random.default_rng((seed, 12))
 
         def drawn(value, u, generator=generator):
@@ -39,6 +39,6 @@ def test_the_95_percent_interval_of_h_holds_the_truth_in_95_of_100_runs():
         answer = judge(simulate(truth, seed, Hand(drawn(0.22, 0.05), 0.05)), WRITTEN)
         misses.append((answer.h_W_m2K - 70.0) / (answer.h_U95_W_m2K / answer.coverage_factor))
     inside = sum(abs(one) < 1.96 for one in misses)
-    assert 89 <= inside <= 99
-    assert abs(float(np.mean(misses))) < 0.3
-    assert 0.82 < float(np.std(misses)) < 1.18
+    assert 53 <= inside <= 60
+    assert abs(float(np.mean(misses))) < 0.35
+    assert 0.78 < float(np.std(misses)) < 1.22
