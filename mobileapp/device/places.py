@@ -8,11 +8,10 @@ from __future__ import annotations
 import os
 from dataclasses import dataclass
 from pathlib import Path
-from typing import Any
 
+from mobileapp.device.android_downloads import FOLDER, activity
 from mobileapp.words import _
 
-FOLDER = "Cooltally"
 ANDROID_DOWNLOADS = Path("/storage/emulated/0/Download")
 MOUNTS = ("/media", "/run/media", "/mnt", "/Volumes")
 
@@ -51,45 +50,7 @@ def _mounted() -> list[Path]:
 def _card_folders() -> list[Path]:
     """The app's own folders on removable cards (Context.getExternalFilesDirs, its first is the device itself)."""
     try:
-        folders = _activity().getExternalFilesDirs(None)
+        folders = activity().getExternalFilesDirs(None)
     except Exception:  # a device without the call offers no card; the rest of the list stands
         return []
     return [Path(folder.getAbsolutePath()) for folder in folders[1:] if folder is not None]
-
-
-def save_to_downloads(name: str, data: bytes) -> str:
-    """Keep one file below Download by the system's own store of media, for devices where a plain path is refused.
-    Returns the place in words; raises OSError where the store refuses too."""
-    from jnius import autoclass
-
-    columns = autoclass("android.provider.MediaStore$MediaColumns")
-    downloads = autoclass("android.provider.MediaStore$Downloads")
-    integer = autoclass("java.lang.Integer")
-    resolver = _activity().getContentResolver()
-    values = autoclass("android.content.ContentValues")()
-    values.put(columns.DISPLAY_NAME, name)
-    values.put(columns.MIME_TYPE, "application/zip")
-    values.put(columns.RELATIVE_PATH, f"Download/{FOLDER}")
-    values.put(columns.IS_PENDING, integer(1))  # nobody sees the file before it is whole
-    uri = resolver.insert(downloads.EXTERNAL_CONTENT_URI, values)
-    if uri is None:
-        raise OSError(f"the store of downloads takes no '{name}'")
-    try:
-        handle = resolver.openFileDescriptor(uri, "w")
-        with os.fdopen(handle.detachFd(), "wb") as file:
-            file.write(data)
-            file.flush()
-            os.fsync(file.fileno())
-        values.clear()
-        values.put(columns.IS_PENDING, integer(0))
-        resolver.update(uri, values, None, None)
-    except BaseException:
-        resolver.delete(uri, None, None)
-        raise
-    return f"Download/{FOLDER}/{name}"
-
-
-def _activity() -> Any:
-    from jnius import autoclass
-
-    return autoclass("org.kivy.android.PythonActivity").mActivity
