@@ -20,13 +20,13 @@ from collections.abc import Callable
 from concurrent.futures import ThreadPoolExecutor
 from dataclasses import dataclass, replace
 from pathlib import Path
+from typing import Any
 
 ROOT = Path(__file__).resolve().parents[2]
 SCREENS = (
-    "home-empty", "home", "bench-empty", "bench", "before", "record-waiting", "record", "record-refused",
-    "record-number", "record-beat", "record-question", "rehearsal", "record-rehearsal", "after", "answer",
-    "answer-look", "answer-rehearsal", "answer-reason", "detail", "series", "handover", "settings",
-    "intake",
+    "home-empty", "home", "bench-empty", "bench", "before", "rehearsal", "after", "answer", "answer-look",
+    "answer-rehearsal", "answer-reason", "detail", "series", "handover", "settings", "intake", "record-waiting",
+    "record", "record-refused", "record-number", "record-beat", "record-question", "record-rehearsal",
 )  # fmt: skip
 SETTLE_FRAMES = 10
 
@@ -170,7 +170,8 @@ class Gallery:
         self.rehearsal = self._rehearsed()
         self.wait_for_answers()
 
-    def _measured(self, setup: object, seed: int) -> str:
+    def _measured(self, setup: Any, seed: int) -> str:
+        """A run whose h follows the power 0.6 of the velocity."""
         from core.bench.setup_file import setup_to_text
         from core.recording.events import RunEnded, RunOpened, Typed
         from mobileapp import rehearsing
@@ -179,7 +180,8 @@ class Gallery:
         opened = RunOpened(
             "measured", setup_to_text(plan.setup), f"2026-03-0{seed}T10:0{seed}:00+01:00", "loop", 0.004
         )
-        display = rehearsing.display_of(replace(opened, run_kind="rehearsal", truth=plan.truth), plan.setup)
+        truth = json.dumps(json.loads(plan.truth) | {"h_W_m2K": 102.0 * (setup.flow.velocity_m_s / 12.0) ** 0.6})
+        display = rehearsing.display_of(replace(opened, run_kind="rehearsal", truth=truth), plan.setup)
         records = self.model._records
         run = records.open_run(int(self.model.session.session), opened)
         hand = random.Random(seed)
@@ -261,7 +263,9 @@ class Gallery:
         if name == "before":
             page.ids.cautions.children[0].ticked = True
             self.until(lambda: bool(page.expectation), 10.0)
-        self.settle(20 if kind in ("series", "handover") else SETTLE_FRAMES)
+        if name == "series":
+            self.until(lambda: page.has_law, 20.0)
+        self.settle()
         return page
 
     def _stage_record(self, state: str) -> object:
@@ -291,9 +295,12 @@ class Gallery:
 
         recorder = self.model.recorder
         recorder.contact(Stamp(recorder.now_s(), 0.004, "loop"))
-        for i, digit in enumerate(("4", "1", "9", "3" if question else "6")):
+        for i, reading in enumerate((84.0, 81.0, 79.0, 76.0)):
             recorder._beaten(BeatView(i, recorder.now_s() + 3.0 * i, 3.0))
-            recorder.digit(digit, Stamp(recorder.now_s(), 0.004, "loop"))
+            asked = question and reading == 76.0
+            recorder.digit("3" if asked else f"{reading:.0f}"[-1], Stamp(recorder.now_s(), 0.004, "loop"))
+            if not asked and recorder.pad.question_C:
+                recorder.answer_question(reading, Stamp(recorder.now_s(), 0.004, "loop"))
 
     def put_away(self) -> None:
         """Forget a run that is still on the pad."""
