@@ -31,7 +31,7 @@ STRAY_s = 60.0  # width of the flat density that stands for anything else
 STRAY_BINS = 40.0
 COMMENSURATE = 1e-3
 LEAST_BLUR_s = 2e-3
-LEAST_BLUR_BINS = 0.02
+LEAST_BLUR_BINS = 0.005
 
 
 @dataclass(frozen=True, slots=True)
@@ -105,15 +105,26 @@ def beat_probability(newest_C: Array, oldest_C: Array, bins: Bins, rows: NDArray
     """Probability that the number shown at a beat is the one that was read.
 
     `newest_C` is the temperature at the beat, `oldest_C` one refresh before it; shapes (n, sets)."""
-    lower, upper = bins.lower_C[rows][:, None], bins.upper_C[rows][:, None]
-    blur_K = max(blur.meter_K, LEAST_BLUR_BINS * float(upper[0, 0] - lower[0, 0]))
     if blur.commensurate or blur.refresh_s == 0.0:
-        raw = cdf((upper - newest_C) / blur_K) - cdf((lower - newest_C) / blur_K)
-    else:
-        span = np.maximum(oldest_C - newest_C, 1e-9)
-        raw = (_ramp(upper, newest_C, oldest_C, blur_K) - _ramp(lower, newest_C, oldest_C, blur_K)) / span
+        return moment_probability(newest_C, bins, rows, blur)
+    lower, upper = bins.lower_C[rows][:, None], bins.upper_C[rows][:, None]
+    blur_K = _blur_K(bins, blur)
+    span = np.maximum(oldest_C - newest_C, 1e-9)
+    raw = (_ramp(upper, newest_C, oldest_C, blur_K) - _ramp(lower, newest_C, oldest_C, blur_K)) / span
     result: Array = np.maximum(raw, 0.0)
     return result
+
+
+def moment_probability(then_C: Array, bins: Bins, rows: NDArray[np.intp], blur: Blur) -> Array:
+    """The same where the temperature at the renewal is known, shape (n, sets)."""
+    lower, upper = bins.lower_C[rows][:, None], bins.upper_C[rows][:, None]
+    blur_K = _blur_K(bins, blur)
+    result: Array = np.maximum(cdf((upper - then_C) / blur_K) - cdf((lower - then_C) / blur_K), 0.0)
+    return result
+
+
+def _blur_K(bins: Bins, blur: Blur) -> float:
+    return max(blur.meter_K, LEAST_BLUR_BINS * float(bins.upper_C[0] - bins.lower_C[0]))
 
 
 def _ramp(edge: Array, newest: Array, oldest: Array, blur_K: float) -> Array:

@@ -8,8 +8,9 @@ et al., J. Comput. Graph. Stat. 13 (2004) 907–929)."""
 from __future__ import annotations
 
 from collections.abc import Callable
-from dataclasses import dataclass
+from dataclasses import dataclass, replace
 from functools import cache
+from math import log, pi
 
 import numpy as np
 from numpy.typing import NDArray
@@ -24,13 +25,24 @@ ROUNDS = 2
 
 @dataclass(frozen=True, slots=True)
 class Posterior:
-    """Mean shift from the point of linearisation, covariance, effective number of points, and the points."""
+    """Mean shift from the point of linearisation, covariance, effective number of points, the weighted points, and
+    the logarithm of the density's integral."""
 
     mean: Array
     covariance: Array
     effective: float
     points: Array
     weights: Array
+    log_evidence: float
+
+    def of_first(self, count: int) -> Posterior:
+        """The marginal posterior of the first parameters."""
+        return replace(
+            self,
+            mean=self.mean[:count],
+            covariance=self.covariance[:count, :count],
+            points=self.points[:, :count],
+        )
 
 
 @cache
@@ -54,14 +66,17 @@ def adapt(
 
     `log_density` takes points of shape (count, d) and gives (count,)."""
     points = weights = np.empty(0)
-    effective = 0.0
+    effective = evidence = 0.0
     for _ in range(rounds):
         root = _root(covariance) * INFLATION
         raw = _normals(count, len(mean))
         points = mean + raw @ root.T
-        weights = _weigh(log_density(points) + 0.5 * np.sum(raw * raw, axis=1))
-        mean, covariance, effective = _moments(points, weights)
-    return Posterior(mean, covariance, effective, points, weights)
+        logs = log_density(points) + 0.5 * np.sum(raw * raw, axis=1)
+        weights = _weigh(logs)
+        size = float(np.sum(np.log(np.diag(root)))) + 0.5 * len(mean) * log(2.0 * pi)
+        evidence = float(np.max(logs) + np.log(np.mean(np.exp(logs - np.max(logs))))) + size
+        mean, covariance, effective = moments(points, weights)
+    return Posterior(mean, covariance, effective, points, weights, evidence)
 
 
 def _root(covariance: Array) -> Array:
@@ -75,7 +90,7 @@ def _weigh(logs: Array) -> Array:
     return result
 
 
-def _moments(points: Array, weights: Array) -> tuple[Array, Array, float]:
+def moments(points: Array, weights: Array) -> tuple[Array, Array, float]:
     """Mean, covariance and effective number; a starved cloud keeps the covariance from collapsing."""
     effective = float(1.0 / np.sum(weights**2))
     mean = weights @ points

@@ -7,19 +7,15 @@ from dataclasses import dataclass
 import numpy as np
 from numpy.typing import NDArray
 
-from core.cooling.clock import clock_log_likelihood, find_clock
-from core.cooling.likelihood import Evidence, as_normal, log_likelihood
+from core.cooling.joint import joint_posterior
+from core.cooling.likelihood import Evidence, as_normal
 from core.cooling.optimiser import gauss_newton
-from core.cooling.posterior import adapt
 from core.cooling.prior import Prior
 
 Array = NDArray[np.float64]
 
 MOST_ROUNDS = 60
 CONVERGED = 0.03  # of a standard deviation
-POINTS = 256
-CLOCK_POINTS = 512
-CLOCK_ROUNDS = 3
 
 
 @dataclass(frozen=True, slots=True)
@@ -80,36 +76,19 @@ def solve(evidence: Evidence, guess: Array, prior: Prior) -> Solution:
         whole[:, free] = shift
         return whole
 
-    def apart(shift: Array) -> Array:
-        whole = widened(shift)
-        logs: Array = log_likelihood(evidence, features, whole) - 0.5 * (point + whole) ** 2 @ prior.weight
+    def log_prior(whole: Array) -> Array:
+        logs: Array = -0.5 * (point + whole) ** 2 @ prior.weight
         return logs
 
-    p = len(free)
-    clock = find_clock(evidence)
-
-    def on_clock(shift: Array) -> Array:
-        if clock is None:
-            return apart(shift)
-        whole = widened(shift[:, :p])
-        logs = clock_log_likelihood(evidence, features, clock, whole, shift[:, p], shift[:, p + 1])
-        return logs - 0.5 * (point + whole) ** 2 @ prior.weight
-
-    if clock is None:
-        posterior = adapt(apart, np.zeros(p), covariance, POINTS)
-    else:
-        first = np.zeros((p + 2, p + 2))
-        first[:p, :p], first[p:, p:] = covariance, clock.covariance
-        middle = np.concatenate([np.zeros(p), [clock.phase_s, clock.refresh_s]])
-        posterior = adapt(on_clock, middle, first, CLOCK_POINTS, CLOCK_ROUNDS)
+    posterior, clock = joint_posterior(evidence, features, covariance, widened, log_prior)
     whole = np.zeros((3, 3))
-    whole[np.ix_(free, free)] = posterior.covariance[:p, :p]
+    whole[np.ix_(free, free)] = posterior.covariance
     return Solution(
-        parameters=point + widened(posterior.mean[None, :p])[0],
+        parameters=point + widened(posterior.mean[None, :])[0],
         covariance=whole,
-        points=point + widened(posterior.points[:, :p]),
+        points=point + widened(posterior.points),
         weights=posterior.weights,
         effective=posterior.effective,
         rounds=rounds,
-        clock=None if clock is None else (float(posterior.mean[p]), float(posterior.mean[p + 1])),
+        clock=clock,
     )
