@@ -4,16 +4,17 @@ from __future__ import annotations
 
 from typing import Any
 
+from kivy.clock import Clock
 from kivy.properties import BooleanProperty, StringProperty
 
 from mobileapp.labels import bench_line
 from mobileapp.navigation import Page
 from mobileapp.widgets import badge, basics  # noqa: F401  the .kv of this screen uses them
 from mobileapp.widgets.basics import PlainPress, SmallWords
-from mobileapp.widgets.run_row import RunListHead, rows_for
+from mobileapp.widgets.run_row import RunListHead, RunRow, rows_for
 from mobileapp.words import _
 
-FEWEST_SPEEDS = 3
+SHOWN_EVERY_S = 0.15
 
 
 class HomeScreen(Page):
@@ -27,14 +28,22 @@ class HomeScreen(Page):
     invented = BooleanProperty(False)
     notice = StringProperty("")
 
+    def __init__(self, **options: Any) -> None:
+        super().__init__(**options)
+        self._show_soon = Clock.create_trigger(self._show, SHOWN_EVERY_S)
+
     def arrive(self, **_aim: Any) -> None:
-        self.model.bind(session=self._show, sessions=self._show, next_speed=self._show, notice=self._tell)
+        self.model.bind(session=self._later, sessions=self._later, next_speed=self._later, notice=self._tell)
         self._show()
         self._tell()
 
     def leave(self) -> None:
-        self.model.unbind(session=self._show, sessions=self._show, next_speed=self._show, notice=self._tell)
+        self.model.unbind(session=self._later, sessions=self._later, next_speed=self._later, notice=self._tell)
         self.model.notice = ""
+
+    def _later(self, *_args: Any) -> None:
+        """Answers of a long session come one by one; the list is drawn anew a few times a second at most."""
+        self._show_soon()
 
     def _tell(self, *_args: Any) -> None:
         self.notice = self.model.notice
@@ -54,11 +63,17 @@ class HomeScreen(Page):
 
     def _list_runs(self, session: Any) -> None:
         box = self.ids.runs
+        rows = rows_for(list(reversed(session.runs))) if self.has_runs else []
+        shown = [child for child in reversed(box.children) if isinstance(child, RunRow)]
+        if rows and [row.run for row in rows] == [row.run for row in shown]:
+            for old, fresh in zip(shown, rows, strict=True):
+                old.take_over(fresh)
+            return
         box.clear_widgets()
-        if not self.has_runs:
+        if not rows:
             return
         box.add_widget(RunListHead())
-        for row in rows_for(list(reversed(session.runs))):
+        for row in rows:
             row.bind(on_release=lambda pressed: self.open_run(pressed.run))
             box.add_widget(row)
 

@@ -29,6 +29,12 @@ class RunRow(ButtonBehavior, BoxLayout):
     narrow = BooleanProperty(False)
 
 
+    def take_over(self, other: RunRow) -> None:
+        """Show what another row of the same run shows; a finger that is on this one stays on it."""
+        for name in ("number_text", "speed_text", "h_text", "u_text", "verdict", "word"):
+            setattr(self, name, getattr(other, name))
+
+
 class RunListHead(BoxLayout):
     """The names and units over the columns."""
 
