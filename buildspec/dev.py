@@ -3,7 +3,11 @@
 python3 buildspec/dev.py app      make the environment, open the app with the demo session
 python3 buildspec/dev.py tests    the same with the test extras, then lint, types and the whole test suite
 python3 buildspec/dev.py lock     resolve the dependencies anew and write buildspec/locks
-python3 buildspec/dev.py wheel    build wheel and sdist, try both in an empty environment
+python3 buildspec/dev.py wheel    build wheel and sdist, try both in empty environments
+python3 buildspec/dev.py stage    the files that the Android package would hold, by the packing tool's own code
+python3 buildspec/dev.py arm      the core's tests on aarch64 wheels under emulation (Debian, as root)
+python3 buildspec/dev.py matrix   core tests and a reference fit with the oldest and newest NumPy and SciPy
+python3 buildspec/dev.py bench    cost of a start beside a bare window
 """
 
 from __future__ import annotations
@@ -16,7 +20,9 @@ import shutil
 import subprocess
 import sys
 import tempfile
+import tomllib
 import venv
+from collections.abc import Callable, Sequence
 from ctypes.util import find_library
 from pathlib import Path
 
@@ -32,6 +38,8 @@ SCREEN_LIBRARIES = {
     "X11": "libx11-6",
     "mtdev": "libmtdev1",
 }
+HELPER_PROGRAMS = {"aapt": "aapt", "javac": "default-jdk-headless", "gcc": "gcc"}
+FRAMEWORK = Path("/usr/share/android-framework-res/framework-res.apk")
 MESA_DRIVERS = ("/usr/lib/*/dri/swrast_dri.so", "/usr/lib/*/dri/libdril_dri.so", "/usr/lib64/dri/swrast_dri.so")
 
 
@@ -44,13 +52,13 @@ def python_in(environment: Path) -> Path:
     return environment / ("Scripts/python.exe" if os.name == "nt" else "bin/python")
 
 
-def run(command: list[str | Path], *, quiet: bool = False, **options: object) -> int:
-    """Run a command in the project's root; quiet ones show their output only when they fail."""
+def run(command: Sequence[str | Path], *, quiet: bool = False, at: Path = ROOT, **options: object) -> int:
+    """Run a command, in the project's root if not told otherwise; quiet ones show their output only when they fail."""
     words = [str(word) for word in command]
     if not quiet:
-        return subprocess.run(words, cwd=ROOT, check=False, **options).returncode
+        return subprocess.run(words, cwd=at, check=False, **options).returncode
     done = subprocess.run(
-        words, cwd=ROOT, check=False, text=True, stdout=subprocess.PIPE, stderr=subprocess.STDOUT, **options
+        words, cwd=at, check=False, text=True, stdout=subprocess.PIPE, stderr=subprocess.STDOUT, **options
     )
     if done.returncode:
         print(done.stdout, file=sys.stderr)
@@ -85,8 +93,8 @@ def environment(lock_name: str) -> Path:
     if interpreter.exists() and (lock_name in fits or "test" in fits):
         return interpreter
     print(f"Making the environment in {ENVIRONMENT.name} (once; a minute or two) …", flush=True)
-    if not interpreter.exists():
-        venv.create(ENVIRONMENT, with_pip=True)
+    if not (interpreter.exists() and any(mark.exists() for mark in marks.values())):
+        make_environment(ENVIRONMENT)
     pip: list[str | Path] = [interpreter, "-m", "pip", "--disable-pip-version-check", "install", "-q"]
     if run([*pip, "-r", lock_file(lock_name)], quiet=True):
         raise Stop(
@@ -96,6 +104,17 @@ def environment(lock_name: str) -> Path:
         raise Stop("The project itself could not be installed into its environment: see pip's words above.")
     marks[lock_name].write_text(wanted[lock_name])
     return interpreter
+
+
+def make_environment(place: Path) -> None:
+    """A virtual environment with pip in it; one that a broken-off run left half made is completed."""
+    try:
+        venv.create(place, with_pip=True, clear=place.exists() and not python_in(place).exists())
+    except (OSError, subprocess.CalledProcessError) as fault:
+        raise Stop(
+            f"The virtual environment {place} could not be made ({fault}): on Debian install python3-venv; "
+            "see that the disk can be written and has 2 GB left."
+        ) from fault
 
 
 def _fingerprint(lock: Path) -> str:
@@ -111,22 +130,39 @@ def missing_packages() -> list[str]:
     return absent
 
 
-def prepare_screen() -> None:
-    """Install what the virtual screen needs, where that is allowed; else name it and stop."""
-    absent = missing_packages()
+def missing_helpers() -> list[str]:
+    """Debian packages without which some tests are skipped: a Java compiler, a C compiler, the manifest linker."""
+    absent = [package for program, package in HELPER_PROGRAMS.items() if not shutil.which(program)]
+    return absent if FRAMEWORK.exists() else [*absent, "android-framework-res"]
+
+
+def prepare_system() -> None:
+    """Install what the tests need of the system, where that is allowed; else name it, and stop without a screen."""
+    needed, helpful = missing_packages(), missing_helpers()
+    absent = [*needed, *helpful]
     if not absent:
         return
     names = " ".join(absent)
     if not (shutil.which("apt-get") and hasattr(os, "geteuid") and os.geteuid() == 0):
-        raise Stop(f"The tests open a real window and need these system packages first: {names}.")
+        if needed:
+            raise Stop(
+                f"The tests open a real window and need these system packages first: {' '.join(needed)}. "
+                f"On Debian: sudo apt-get install {names}"
+            )
+        print(f"Some tests of the packaging are skipped for want of these system packages: {names}", flush=True)
+        return
     print(f"Installing system packages: {names} …", flush=True)
     quiet = {**os.environ, "DEBIAN_FRONTEND": "noninteractive"}
     for command in (
         ["apt-get", "update", "-qq"],
         ["apt-get", "install", "-y", "-qq", "--no-install-recommends", *absent],
     ):
-        if run(list(command), quiet=True, env=quiet):
+        if run(command, quiet=True, env=quiet) and missing_packages():
             raise Stop(f"The system packages could not be installed: {names}; see apt's words above.")
+
+
+def on_linux() -> bool:
+    return sys.platform.startswith("linux")
 
 
 def has_screen() -> bool:
@@ -140,6 +176,9 @@ def app(words: list[str]) -> int:
     """Open the app with the demo session, or run the demo's fit where there is no screen."""
     interpreter = environment("run")
     if has_screen():
+        absent = [SCREEN_LIBRARIES[name] for name in ("GL", "EGL") if on_linux() and not find_library(name)]
+        if absent:
+            raise Stop(f"A window needs these system packages first: {' '.join(absent)}.")
         return run([interpreter, "-m", "mobileapp", "--demo", *words])
     print("There is no screen here; this is the fit of the demo session instead:", flush=True)
     return run([interpreter, "-m", "core", "fit", "core/demo/session"])
@@ -148,7 +187,7 @@ def app(words: list[str]) -> int:
 def tests(words: list[str]) -> int:
     """Lint, types and the whole test suite; words after `tests` go to pytest."""
     interpreter = environment("test")
-    prepare_screen()
+    prepare_system()
     for name, command in (
         ("ruff", ["-m", "ruff", "check", "-q", "."]),
         ("mypy", ["-m", "mypy", "--strict", "core"]),
@@ -163,12 +202,18 @@ def tests(words: list[str]) -> int:
 def lock(_words: list[str]) -> int:
     """Resolve the dependencies anew in fresh environments and write the lock files."""
     LOCKS.mkdir(exist_ok=True)
-    for name, extras in (("run", ""), ("test", "[test,report]")):
+    extras = tomllib.loads((ROOT / "pyproject.toml").read_text("utf-8"))["project"]["optional-dependencies"]
+    building = ["setuptools>=77", "wheel"]
+    for name, wanted in (
+        ("run", [*building, str(ROOT)]),
+        ("test", [*building, f"{ROOT}[test,report,android]"]),
+        ("android", extras["android"]),
+    ):
         with tempfile.TemporaryDirectory() as scratch:
             place = Path(scratch) / "env"
-            venv.create(place, with_pip=True)
+            make_environment(place)
             pip: list[str | Path] = [python_in(place), "-m", "pip", "--disable-pip-version-check"]
-            if run([*pip, "install", "-q", "setuptools>=77", "wheel", f"{ROOT}{extras}"], quiet=True):
+            if run([*pip, "install", "-q", *wanted], quiet=True):
                 raise Stop("The dependencies could not be resolved: see pip's words above.")
             frozen = subprocess.run(
                 [str(w) for w in [*pip, "freeze", "--all", "--exclude", "pip", "--exclude", "cooltally"]],
@@ -177,44 +222,25 @@ def lock(_words: list[str]) -> int:
                 capture_output=True,
             ).stdout
         (LOCKS / f"{name}.txt").write_text(frozen)
-        print(f"{name}: {len(frozen.splitlines())} packages")
+        print(f"{name}: {len(frozen.splitlines())} packages", flush=True)
     return 0
 
 
-def wheel(_words: list[str]) -> int:
-    """Build wheel and sdist into dist/, and try the wheel in an empty environment from another folder."""
-    interpreter = environment("test")
-    out = ROOT / "dist"
-    shutil.rmtree(out, ignore_errors=True)
-    pip: list[str | Path] = [interpreter, "-m", "pip", "--disable-pip-version-check"]
-    if run([*pip, "wheel", "-q", "--no-deps", "--no-build-isolation", "-w", out, ROOT], quiet=True):
-        raise Stop("The wheel could not be built: see above.")
-    backend = "import setuptools.build_meta as b; print(b.build_sdist('dist'))"
-    if run([interpreter, "-c", backend], quiet=True):
-        raise Stop("The source archive could not be built: see above.")
-    built = next(out.glob("*.whl"))
-    with tempfile.TemporaryDirectory() as scratch:
-        place = Path(scratch) / "env"
-        venv.create(place, with_pip=True)
-        own: list[str | Path] = [python_in(place), "-m", "pip", "--disable-pip-version-check", "install", "-q"]
-        if run([*own, "-r", lock_file("run")], quiet=True) or run([*own, "--no-deps", built], quiet=True):
-            raise Stop("The wheel could not be installed in an empty environment: see above.")
-        scripts = python_in(place).parent
-        for command in (
-            [scripts / "cooltally-core", "air", "--temperature-C", "23", "--pressure-Pa", "101325"],
-            [scripts / "cooltally", "--help"],
-        ):
-            done = subprocess.run(
-                [str(w) for w in command], cwd=scratch, check=False, text=True, capture_output=True
-            )
-            if done.returncode:
-                raise Stop(f"{Path(command[0]).name} from the wheel failed: {done.stderr.strip()}")
-            print(done.stdout.strip())
-    print(f"{built.name}: both commands run from an empty environment in another folder.")
-    return 0
+def beside(script: str, lock_name: str = "test") -> Callable[[list[str]], int]:
+    """A command that stands in a script of its own and runs in the project's environment."""
+    return lambda words: run([environment(lock_name), ROOT / "buildspec" / script, *words])
 
 
-COMMANDS = {"app": app, "tests": tests, "lock": lock, "wheel": wheel}
+COMMANDS: dict[str, Callable[[list[str]], int]] = {
+    "app": app,
+    "tests": tests,
+    "lock": lock,
+    "wheel": beside("release.py"),
+    "stage": beside("android_staging.py"),
+    "arm": beside("arm.py"),
+    "matrix": beside("matrix.py"),
+    "bench": beside("start_cost.py"),
+}
 
 
 def main() -> int:

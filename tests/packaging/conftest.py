@@ -6,7 +6,7 @@ from pathlib import Path
 import pytest
 
 ROOT = Path(__file__).resolve().parents[2]
-sys.path.insert(0, str(ROOT / "buildspec"))
+sys.path[:0] = [str(ROOT / "buildspec"), str(Path(__file__).parent)]
 import android_staging  # noqa: E402  a script beside the build spec, not a package
 
 
