@@ -61,6 +61,8 @@ class RecordScreen(Page):
         self._paint_live()
         self.ids.display.source = self.model.recorder.simulated_display
         self.model.watch_screen(True)
+        self.model.bind(notice=self._told)
+        self._told()
 
     def leave(self) -> None:
         self.model.recorder.unbind(pad=self._paint, live=self._paint_live, beat=self._paint_beat)
@@ -68,6 +70,7 @@ class RecordScreen(Page):
             self._ticker.cancel()
         self.ids.display.source = None
         self.model.watch_screen(False)
+        self.model.unbind(notice=self._told)
 
     def hold_back(self) -> bool:
         """The back key never leaves a run by accident; it closes the number panel at most."""
@@ -75,6 +78,12 @@ class RecordScreen(Page):
             self.asking_number = False
             return True
         return self.model.recorder.pad is not None
+
+    def _told(self, *_args: Any) -> None:
+        """What happened while the app was away stands on the pad for a moment."""
+        if self.model.notice:
+            self.ids.pad.refuse(self.model.notice)
+            self.model.notice = ""
 
     # ------------------------------------------------------------------ what is painted
 
