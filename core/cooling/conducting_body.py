@@ -22,8 +22,8 @@ Array = NDArray[np.float64]
 
 STEFAN_BOLTZMANN_W_M2K4 = 5.670374419e-8  # CODATA 2018
 ZERO_C_K = 273.15
-STEPS_PER_TIME_CONSTANT = 600
-CELLS_IN = {1: 150, 2: 80, 3: 40}  # in each direction, by the number of directions
+STEPS_PER_TIME_CONSTANT = 300
+CELLS_IN = {1: 150, 2: 80, 3: 32}  # in each direction, by the number of directions
 LONGEST = 40.0  # time constants
 MESH = 0.01  # of ln coefficient, between matrices that are worked out
 
@@ -77,13 +77,14 @@ class Outside:
 @dataclass(frozen=True, slots=True)
 class _Cut:
     """A direction cut into layers, for steps that reach `reach_m2` (diffusivity times time). `shares` are those of
-    the volume; `known` keeps the matrices that were worked out."""
+    the volume, `seen` what each has of the sensor's temperature; `known` keeps the matrices that were worked out."""
 
     direction: Direction
     layers: Layers
     conductivity_W_mK: float
     reach_m2: float
     shares: Array
+    seen: Array
     known: dict[int, Array] = field(default_factory=dict)
 
     def step(self, whole_W_m2K: float) -> Array:
@@ -149,7 +150,8 @@ def _cut(body: Body, thermal: ThermalBody, reach_m2: float) -> tuple[_Cut, ...]:
     for direction in directions:
         layers = layers_of(direction, CELLS_IN[len(directions)])
         shares = layers.volumes / layers.volumes.sum()
-        cuts.append(_Cut(direction, layers, thermal.conductivity_W_mK, reach_m2, shares))
+        seen = layers.weights(direction.place)
+        cuts.append(_Cut(direction, layers, thermal.conductivity_W_mK, reach_m2, shares, seen))
     return tuple(cuts)
 
 
@@ -165,5 +167,5 @@ def _seen(excess: Array, cuts: tuple[_Cut, ...], whole_W_m2K: float) -> float:
         if cut.direction.place >= 1.0:
             excess = cut.face_over(excess[-1], whole_W_m2K)
         else:
-            excess = np.tensordot(cut.layers.weights(cut.direction.place), excess, axes=(0, 0))
+            excess = np.tensordot(cut.seen, excess, axes=(0, 0))
     return float(excess)

@@ -22,6 +22,7 @@ Array = NDArray[np.float64]
 
 STEPS_PER_TIME_CONSTANT = 250
 CONDUCTING = 0.03  # Biot number (half thickness) above which all modes of conduction are followed
+DOUBLED_AFTER_s = 0.15
 STILL_AIR_SHARE = 0.12  # of the forced coefficient, before the fan has run up
 
 
@@ -212,13 +213,18 @@ class Display:
 
 @dataclass(frozen=True, slots=True)
 class Hand:
-    """The person: mean delay and scatter of a tap [s], and faults. `late` maps the count of a tap to how many
-    seconds it comes too late; `slips` maps the count of a typed number to how many steps it is off."""
+    """The person: mean delay and scatter of a tap [s], and faults, by the count of the change or beat.
+
+    `late` maps a tap to how many seconds it comes too late; `doubled` taps are made twice, which counts the next
+    number too, so that the person lets that change pass; `missed` changes are not tapped, and the next tap is two
+    steps down; `slips` maps a typed number to how many steps it is off."""
 
     lag_s: float = 0.0
     jitter_s: float = 0.05
     late: dict[int, float] = field(default_factory=dict)
     slips: dict[int, int] = field(default_factory=dict)
+    doubled: frozenset[int] = frozenset()
+    missed: frozenset[int] = frozenset()
 
 
 def display_of(truth: Truth, seed: int) -> Display:
@@ -229,7 +235,9 @@ def display_of(truth: Truth, seed: int) -> Display:
 
 
 def record(display: Display, hand: Hand, truth: Truth, seed: int) -> Readings:
-    """What the person records of a display, in the mode of the bench, down to the end temperature."""
+    """What the person records of a display, in the mode of the bench, down to the end temperature.
+
+    A number that a noisy meter shows once more is not tapped again."""
     by_mode: dict[str, Callable[[Display, Hand, Truth, int], Readings]] = {"change": _tapped, "beat": _on_beats}
     return by_mode[truth.setup.recording.mode](display, hand, truth, seed)
 
@@ -245,13 +253,18 @@ def simulate(truth: Truth, seed: int, hand: Hand | None = None) -> Readings:
 def _tapped(display: Display, hand: Hand, truth: Truth, seed: int) -> Readings:
     rng = np.random.default_rng((seed, 1))
     times, numbers = display.changes()
-    inside = numbers >= truth.end_C
+    lowest = np.concatenate([[np.inf], np.minimum.accumulate(numbers)[:-1]])
+    inside = (numbers >= truth.end_C) & (numbers < lowest)
     times, numbers = times[inside], numbers[inside]
     delays = np.maximum(hand.lag_s + hand.jitter_s * rng.normal(size=len(times)), -0.9 * display.refresh_s - 0.05)
     taps = times + delays
     for count, late in hand.late.items():
         taps[count] += late
     taps[0] = 0.0
+    for count in sorted(hand.doubled):
+        taps[count + 1] = taps[count] + DOUBLED_AFTER_s
+    kept = [count for count in range(len(taps)) if count not in hand.missed]
+    taps, numbers = taps[kept], numbers[kept]
     for k in range(1, len(taps)):
         taps[k] = max(taps[k], taps[k - 1] + 1e-3)
     return Readings(tuple(float(t) for t in taps), tuple(float(n) for n in numbers))
