@@ -203,7 +203,7 @@ def lock(_words: list[str]) -> int:
     """Resolve the dependencies anew in fresh environments and write the lock files."""
     LOCKS.mkdir(exist_ok=True)
     extras = tomllib.loads((ROOT / "pyproject.toml").read_text("utf-8"))["project"]["optional-dependencies"]
-    building = ["setuptools>=77", "wheel"]
+    building = ["setuptools>=77"]
     for name, wanted in (
         ("run", [*building, str(ROOT)]),
         ("test", [*building, f"{ROOT}[test,report,android]"]),
