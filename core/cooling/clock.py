@@ -25,7 +25,7 @@ Array = NDArray[np.float64]
 FEWEST_TAPS = 12
 WIDEST_SCATTER = 0.3  # of a refresh: beyond it the clock tells next to nothing
 SEARCH_REL = 0.04  # either side of the refresh in the set-up
-CELLS = 6  # grid steps in the time in which clocks drift apart by one refresh
+CELLS = 4  # grid steps in the time in which clocks drift apart by one refresh
 SURE = 8.0  # log-likelihood by which a clock must beat its absence, beyond the number of clocks tried
 ROUNDS = 4
 FAINT = 1e-7
@@ -150,9 +150,13 @@ def clock_log_likelihood(
     out = np.minimum(out_old + refresh_s, out_new)[tap]
     time = evidence.bins.time_s[rows]
     hand = _normal(time[tap][:, None] - blur.tap_lag_s - renewal, clock.hand_s)
-    inside = np.maximum(cdf((renewal - into[tap]) / edge) - cdf((renewal - out) / edge), 0.0)
+    if blur.meter_K > 0.0:
+        inside = np.maximum(cdf((renewal - into[tap]) / edge) - cdf((renewal - out) / edge), 0.0)
+    else:
+        within = np.minimum(renewal - into[tap], out - renewal) / (2.0 * sqrt(3.0) * edge)
+        inside = np.minimum(np.maximum(within + 0.5, 0.0), 1.0)
     good = np.add.reduceat(hand * inside, clock.first, axis=0)
-    fault = faulty_density(time[:, None], into, blur)
+    fault = faulty_density(time, features.value[0], blur)[:, None]
     faulty = evidence.faulty()[:, None]
     logs = np.log((1.0 - faulty) * good + faulty * fault + 1e-300)
     place = (features.start_C + shift @ features.start_slope - evidence.start_C) / evidence.start_u_K

@@ -51,19 +51,21 @@ def fit_cooling(
     prior = prior_of(setup)
     whole = gather(readings, setup, model, 0, rulings)
     guess = first_guess(whole) if warm is None else warm_guess(warm, model)
+    late = None
     try:
         if start_s is not None:
             start_row, by = int(np.searchsorted(np.array(readings.time_s), start_s - 1e-9)), "person"
         else:
             later = gather(readings, setup, model, latest_start(len(readings)), rulings)
-            start_row, by = find_start(whole, later, guess, prior), "program"
+            start_row, late = find_start(whole, later, guess, prior)
+            by = "program"
         evidence = gather(readings, setup, model, start_row, rulings)
         if np.count_nonzero(evidence.counts) < FEWEST:
             raise NoAnswer(
                 f"Only {np.count_nonzero(evidence.counts)} readings are left in the fit, and it needs {FEWEST}: "
                 "move its start earlier, or keep more readings."
             )
-        solution = solve(evidence, guess, prior)
+        solution = solve(evidence, guess if late is None else late.point, prior, None if late is None else late.tangent)
         _refuse_senseless(solution)
         fit = outcome(readings, evidence, solution, prior, start_row, by, rulings, profile)
     except np.linalg.LinAlgError as fault:

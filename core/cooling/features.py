@@ -6,7 +6,7 @@ in the parameters, so that one linearisation serves many sets of parameters at o
 
 from __future__ import annotations
 
-from dataclasses import dataclass
+from dataclasses import dataclass, replace
 from functools import cache
 
 import numpy as np
@@ -40,6 +40,11 @@ class Features:
         """The features for parameter shifts of shape (sets, parameters), shape (kinds, n, sets)."""
         result: Array = self.value[:, :, None] + self.slope @ shift.T
         return result
+
+    def moved(self, shift: Array) -> Features:
+        """The features one shift of shape (parameters,) away, on their straight lines."""
+        start_C = self.start_C + float(self.start_slope @ shift)
+        return replace(self, value=self.value + self.slope @ shift, start_C=start_C)
 
 
 def _bundle(parameters: Array) -> Array:

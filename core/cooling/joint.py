@@ -20,7 +20,7 @@ LogPrior = Callable[[Array], Array]
 
 TAP_POINTS = 256
 BEAT_POINTS = 512
-CLOCK_POINTS = 512
+CLOCK_POINTS = 256
 PHASE_POINTS = 512
 WORTH = 1e-3  # posterior share below which an explanation is left out
 
@@ -48,7 +48,7 @@ def joint_posterior(
         return _on_clock(evidence, features, covariance, widen, log_prior, clock)
     if evidence.mode != "beat":
         return adapt(alone, np.zeros(free), covariance, TAP_POINTS), None
-    found = adapt(alone, np.zeros(free), covariance, BEAT_POINTS, 3)
+    found = adapt(alone, np.zeros(free), covariance, BEAT_POINTS)
     if not wanders(evidence):
         return found, None
     return _with_phase(evidence, features, found, widen, log_prior)
@@ -68,7 +68,7 @@ def _on_clock(
     first = np.zeros((free + 2, free + 2))
     first[:free, :free], first[free:, free:] = covariance, clock.covariance
     middle = np.concatenate([np.zeros(free), [clock.phase_s, clock.refresh_s]])
-    found = adapt(together, middle, first, CLOCK_POINTS, 3)
+    found = adapt(together, middle, first, CLOCK_POINTS)
     return found.of_first(free), (float(found.mean[free]), float(found.mean[free + 1]))
 
 
@@ -94,7 +94,7 @@ def _with_phase(
     first[:free, :free] = rough.covariance[:free, :free]
     first[free, free] = min(variance + (0.03 * refresh) ** 2, refresh**2 / 12.0)
     middle = np.append(rough.mean[:free], phase)
-    found = adapt(with_window(phase), middle, first, PHASE_POINTS, 3)
+    found = adapt(with_window(phase), middle, first, PHASE_POINTS)
     share = 1.0 / (1.0 + exp(min(apart.log_evidence - found.log_evidence, 700.0)))
     if share < WORTH:
         return apart, None

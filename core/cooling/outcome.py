@@ -10,6 +10,7 @@ from numpy.typing import NDArray
 
 from core.bench.readings import Readings, Ruling
 from core.cooling.diagnosis import doubtful, scores
+from core.cooling.features import Features
 from core.cooling.fit import CoolingFit, LeftOut
 from core.cooling.likelihood import Evidence, as_normal, log_likelihood
 from core.cooling.model import PARAMETERS, STILL_PARAMETERS, CoolingModel
@@ -40,7 +41,7 @@ def outcome(
     features = evidence.features(solution.parameters)
     covariance = solution.covariance
     var_h, var_air = covariance[0, 0], 0.0 if still else covariance[2, 2]
-    per_air = covariance[0, 2] / var_air if var_air > 0.0 else _per_air(evidence, solution)
+    per_air = covariance[0, 2] / var_air if var_air > 0.0 else _per_air(evidence, features)
     fixed = max(var_h - (covariance[0, 2] ** 2 / var_air if var_air > 0.0 else 0.0), 0.0)
     measured = per_air if var_air == 0.0 else covariance[0, 2] * prior.air_weight
     window = (readings.time_s[start_row], readings.time_s[-1])
@@ -85,7 +86,7 @@ def outcome(
         asymptote_shift_K=offset,
         h_per_air_W_m2K2=h * per_air,
         h_per_measured_air_W_m2K2=h * measured,
-        h_per_lag_W_m2Ks=h * _per_lag(evidence, solution, prior),
+        h_per_lag_W_m2Ks=h * _per_lag(evidence, features, prior),
         phase_s=None if solution.clock is None else solution.clock[0] % solution.clock[1],
         refresh_found_s=None if solution.clock is None else solution.clock[1],
         covariance=tuple(tuple(float(x) for x in row) for row in covariance),
@@ -125,23 +126,22 @@ def _model_name(model: CoolingModel, inside: float) -> str:
     return names.get(len(model.factors), {}).get(model.body.shape, "block")
 
 
-def _per_lag(evidence: Evidence, solution: Solution, prior: Prior) -> float:
+def _per_lag(evidence: Evidence, features: Features, prior: Prior) -> float:
     """d ln h for 1 s more in the mean tap delay: the shift of all taps, through the normal equations."""
     if evidence.mode == "beat":
         return 0.0
-    return _response(evidence, solution, list(prior.free), np.full(len(evidence.rows), -1.0))
+    return _response(evidence, features, list(prior.free), np.full(len(evidence.rows), -1.0))
 
 
-def _per_air(evidence: Evidence, solution: Solution) -> float:
+def _per_air(evidence: Evidence, features: Features) -> float:
     """d ln h for 1 K in an asymptote that is taken as known; not worked out for a run in still air."""
     if evidence.model.natural_W_m2K > 0.0:
         return 0.0
-    slope = as_normal(evidence, evidence.features(solution.parameters)).slope[:, 2]
-    return _response(evidence, solution, [0, 1], -slope)
+    slope = as_normal(evidence, features).slope[:, 2]
+    return _response(evidence, features, [0, 1], -slope)
 
 
-def _response(evidence: Evidence, solution: Solution, free: list[int], miss: Array) -> float:
-    features = evidence.features(solution.parameters)
+def _response(evidence: Evidence, features: Features, free: list[int], miss: Array) -> float:
     one = as_normal(evidence, features)
     weight = one.good / one.sd**2 * evidence.counts[evidence.rows]
     slope = one.slope[:, free]

@@ -20,7 +20,10 @@ from core.cooling.normal import quantile
 Array = NDArray[np.float64]
 
 INFLATION = 1.3
-ROUNDS = 2
+MOST_ROUNDS = 8
+ENOUGH = 0.3  # share of the points that are effective once the proposal fits
+FEWEST_EACH = 8.0  # effective points for each parameter below which weights are tempered
+HALVINGS = 12
 
 
 @dataclass(frozen=True, slots=True)
@@ -60,11 +63,12 @@ def _normals(count: int, dimension: int) -> Array:
 
 
 def adapt(
-    log_density: Callable[[Array], Array], mean: Array, covariance: Array, count: int, rounds: int = ROUNDS
+    log_density: Callable[[Array], Array], mean: Array, covariance: Array, count: int, rounds: int = MOST_ROUNDS
 ) -> Posterior:
     """Mean and covariance of a density known up to a factor, from a first guess at both.
 
-    `log_density` takes points of shape (count, d) and gives (count,)."""
+    `log_density` takes points of shape (count, d) and gives (count,). Rounds go on until the proposal fits; while it
+    does not, weights are tempered, so that a few heavy points do not collapse the next proposal."""
     points = weights = np.empty(0)
     effective = evidence = 0.0
     for _ in range(rounds):
@@ -72,10 +76,12 @@ def adapt(
         raw = _normals(count, len(mean))
         points = mean + raw @ root.T
         logs = log_density(points) + 0.5 * np.sum(raw * raw, axis=1)
-        weights = _weigh(logs)
         size = float(np.sum(np.log(np.diag(root)))) + 0.5 * len(mean) * log(2.0 * pi)
         evidence = float(np.max(logs) + np.log(np.mean(np.exp(logs - np.max(logs))))) + size
+        weights = _tempered(logs, FEWEST_EACH * len(mean))
         mean, covariance, effective = moments(points, weights)
+        if effective > ENOUGH * count:
+            break
     return Posterior(mean, covariance, effective, points, weights, evidence)
 
 
@@ -84,20 +90,28 @@ def _root(covariance: Array) -> Array:
     return np.asarray(np.linalg.cholesky(firm), dtype=np.float64)
 
 
-def _weigh(logs: Array) -> Array:
+def _tempered(logs: Array, fewest: float) -> Array:
+    """Weights of points, flattened as far as it takes to have so many effective ones."""
+    weights = _weights(logs)
+    if np.sum(weights**2) * fewest <= 1.0:
+        return weights
+    low, high = 0.0, 1.0
+    for _ in range(HALVINGS):
+        power = (low + high) / 2.0
+        weights = _weights(power * logs)
+        low, high = (power, high) if np.sum(weights**2) * fewest <= 1.0 else (low, power)
+    return _weights(low * logs)
+
+
+def _weights(logs: Array) -> Array:
     weights = np.exp(logs - np.max(logs))
     result: Array = weights / np.sum(weights)
     return result
 
 
 def moments(points: Array, weights: Array) -> tuple[Array, Array, float]:
-    """Mean, covariance and effective number; a starved cloud keeps the covariance from collapsing."""
+    """Mean, covariance and effective number of weighted points."""
     effective = float(1.0 / np.sum(weights**2))
     mean = weights @ points
     centred = points - mean
-    covariance = (centred * weights[:, None]).T @ centred
-    dimension = points.shape[1]
-    if effective < 10.0 * dimension:
-        widened = np.cov(points.T, ddof=0) * 0.25
-        covariance = covariance + widened
-    return mean, covariance, effective
+    return mean, (centred * weights[:, None]).T @ centred, effective

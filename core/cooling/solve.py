@@ -7,8 +7,9 @@ from dataclasses import dataclass
 import numpy as np
 from numpy.typing import NDArray
 
+from core.cooling.features import Features
 from core.cooling.joint import joint_posterior
-from core.cooling.likelihood import Evidence, as_normal
+from core.cooling.likelihood import Evidence, Normal, as_normal
 from core.cooling.optimiser import gauss_newton
 from core.cooling.prior import Prior
 
@@ -16,6 +17,7 @@ Array = NDArray[np.float64]
 
 MOST_ROUNDS = 60
 CONVERGED = 0.03  # of a standard deviation
+STRAIGHT = 1.0  # deviations of a reading over which its prediction is a straight line in the parameters
 
 
 @dataclass(frozen=True, slots=True)
@@ -31,8 +33,41 @@ class Solution:
     clock: tuple[float, float] | None  # phase and refresh of the display [s], where the taps tell them
 
 
-def search(evidence: Evidence, guess: Array, prior: Prior, rounds: int = MOST_ROUNDS) -> tuple[Array, Array, int]:
-    """Parameters (3,), covariance of the free ones, and rounds, with each reading taken as a robust normal one.
+@dataclass(frozen=True, slots=True)
+class Tangent:
+    """The features at a point, and near it along their straight lines."""
+
+    point: Array
+    features: Features
+
+    def at(self, point: Array) -> Features:
+        """The features at a point nearby."""
+        return self.features.moved(point - self.point)
+
+
+@dataclass(frozen=True, slots=True)
+class Found:
+    """Parameters (3,), covariance of the free ones, rounds, and a tangent that reaches the parameters."""
+
+    point: Array
+    covariance: Array
+    rounds: int
+    tangent: Tangent
+
+
+def search(evidence: Evidence, guess: Array, prior: Prior, tangent: Tangent | None = None) -> Found:
+    """The parameters with each reading taken as a robust normal one.
+
+    The course of cooling is worked out anew only where the search has moved a prediction by more than `STRAIGHT`
+    deviations of its reading; nearer, it follows the tangent, so that a search that starts from an earlier fit of the
+    same run needs one course.
+
+    Parameters
+    ----------
+    evidence : of the run
+    guess : first parameters, shape (3,)
+    prior : of the parameters
+    tangent : from an earlier search of the same readings
 
     Raises
     ------
@@ -49,9 +84,10 @@ def search(evidence: Evidence, guess: Array, prior: Prior, rounds: int = MOST_RO
         return point
 
     def normal_equations(part: Array) -> tuple[Array, Array]:
+        nonlocal tangent
         point = whole(part)
-        features = evidence.features(point)
-        one = as_normal(evidence, features)
+        tangent, one = _taken(evidence, point, tangent)
+        features = tangent.at(point)
         weight = one.good / one.sd**2 * evidence.counts[evidence.rows]
         place = features.start_slope / evidence.start_u_K
         matrix = (one.slope * weight[:, None]).T @ one.slope + np.outer(place, place)
@@ -61,15 +97,28 @@ def search(evidence: Evidence, guess: Array, prior: Prior, rounds: int = MOST_RO
         gradient -= point * prior.weight
         return matrix[np.ix_(free, free)], gradient[free]
 
-    settled = gauss_newton(normal_equations, start[free], prior.largest_step[free], CONVERGED, rounds)
-    return whole(settled.point), settled.covariance, settled.rounds
+    settled = gauss_newton(normal_equations, start[free], prior.largest_step[free], CONVERGED, MOST_ROUNDS)
+    point = whole(settled.point)
+    return Found(point, settled.covariance, settled.rounds, _taken(evidence, point, tangent)[0])
 
 
-def solve(evidence: Evidence, guess: Array, prior: Prior) -> Solution:
+def _taken(evidence: Evidence, point: Array, tangent: Tangent | None) -> tuple[Tangent, Normal]:
+    """A tangent that reaches a point, and the readings there as normal ones."""
+    if tangent is not None:
+        one = as_normal(evidence, tangent.at(point))
+        moved = np.abs(one.slope @ (point - tangent.point)) / one.sd
+        if np.max(moved) <= STRAIGHT:
+            return tangent, one
+    tangent = Tangent(point, evidence.features(point))
+    return tangent, as_normal(evidence, tangent.features)
+
+
+def solve(evidence: Evidence, guess: Array, prior: Prior, tangent: Tangent | None = None) -> Solution:
     """Posterior mean and covariance of the parameters of a window."""
-    point, covariance, rounds = search(evidence, guess, prior)
+    found = search(evidence, guess, prior, tangent)
+    point, covariance = found.point, found.covariance
     free = list(prior.free)
-    features = evidence.features(point)
+    features = found.tangent.at(point)
 
     def widened(shift: Array) -> Array:
         whole: Array = np.zeros((len(shift), 3))
@@ -89,6 +138,6 @@ def solve(evidence: Evidence, guess: Array, prior: Prior) -> Solution:
         points=point + widened(posterior.points),
         weights=posterior.weights,
         effective=posterior.effective,
-        rounds=rounds,
+        rounds=found.rounds,
         clock=clock,
     )

@@ -12,7 +12,7 @@ from numpy.typing import NDArray
 
 from core.cooling.likelihood import Evidence, as_normal
 from core.cooling.prior import Prior
-from core.cooling.solve import search
+from core.cooling.solve import Found, search
 
 Array = NDArray[np.float64]
 
@@ -23,8 +23,8 @@ STRETCHES = (1, 2, 3, 5, 8, 13, 21)  # rows taken together
 SURE = 3.1  # standard normal quantile of one in a thousand
 
 
-def find_start(evidence: Evidence, later: Evidence, guess: Array, prior: Prior) -> int:
-    """The row at which the fit begins; 0 where nothing speaks against the whole record.
+def find_start(evidence: Evidence, later: Evidence, guess: Array, prior: Prior) -> tuple[int, Found | None]:
+    """The row at which the fit begins, 0 where nothing speaks against the whole record; and the fit of the later part.
 
     Parameters
     ----------
@@ -35,16 +35,17 @@ def find_start(evidence: Evidence, later: Evidence, guess: Array, prior: Prior) 
     """
     early = int(np.argmax(later.counts))
     if early == 0:
-        return 0
-    point, covariance, _ = search(later, guess, prior)
-    one = as_normal(evidence, evidence.features(point))
+        return 0, None
+    found = search(later, guess, prior)
+    covariance = found.covariance
+    one = as_normal(evidence, found.tangent.at(found.point))
     rows = evidence.rows
     place = np.flatnonzero((rows < early) & evidence.counts[rows])[::-1]
     squares = _surprises(one.miss[place], one.sd[place], one.slope[place][:, list(prior.free)], covariance)[::-1]
     first = _first_sound(squares)
     if first == 0:
-        return 0
-    return early if first == len(place) else int(rows[place[::-1][first]])
+        return 0, found
+    return early if first == len(place) else int(rows[place[::-1][first]]), found
 
 
 def _surprises(miss: Array, sd: Array, slope: Array, covariance: Array) -> Array:
