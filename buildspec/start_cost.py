@@ -61,27 +61,31 @@ def started(source: str, display: str) -> tuple[float, float]:
             "COOLTALLY_TRACE": str(trace),
             "PYTHONPATH": str(ROOT),
         }
+        script = Path(folder) / "start.py"
+        script.write_text(source)
         began = time.monotonic()
-        words = [sys.executable, "-c", source, f"{folder}/data"]
-        with subprocess.Popen(
-            words, env=surroundings, cwd=folder, stdout=subprocess.DEVNULL, stderr=subprocess.DEVNULL
-        ) as process:
+        words = [sys.executable, str(script), f"{folder}/data"]
+        log = Path(folder) / "log"
+        with (
+            log.open("w") as told,
+            subprocess.Popen(words, env=surroundings, cwd=folder, stdout=told, stderr=told) as process,
+        ):
             try:
-                ready = _ready(trace, process)
+                ready = _ready(trace, process, log)
                 time.sleep(SETTLE_S)  # what is loaded after the first frame is there by now
                 return ready - began, _resident_mb(process.pid)
             finally:
                 process.kill()
 
 
-def _ready(trace: Path, process: subprocess.Popen) -> float:
+def _ready(trace: Path, process: subprocess.Popen, log: Path) -> float:
     while process.poll() is None:
         if trace.exists():
             for line in trace.read_text().splitlines():
                 if '"ready"' in line and line.endswith("}"):
                     return float(json.loads(line)["t"])
         time.sleep(0.002)
-    raise SystemExit("The window did not open.")
+    raise SystemExit(f"The window did not open: {log.read_text()[-400:]}")
 
 
 def main() -> int:

@@ -82,7 +82,14 @@ class AppInWindow:
     """The app as a process of its own, its trace, and a hand on its screen."""
 
     def __init__(
-        self, display: str, folder: Path, *arguments: str, size: str = "1280x800", **more_environment: str
+        self,
+        display: str,
+        folder: Path,
+        *arguments: str,
+        size: str = "1280x800",
+        start: tuple[str, ...] = (sys.executable, "-m", "mobileapp"),
+        at: Path = ROOT,
+        **more_environment: str,
     ) -> None:
         self.folder = folder
         self._trace = folder / "trace.jsonl"
@@ -97,12 +104,13 @@ class AppInWindow:
             "COOLTALLY_TRACE": str(self._trace),
         } | more_environment
         self.data = folder / "data"
-        command = [sys.executable, "-m", "mobileapp", "--data", str(self.data), "--size", size, *arguments]
+        command = [*start, "--data", str(self.data), "--size", size, *arguments]
         self.process = subprocess.Popen(
-            command, cwd=ROOT, env=environment, stdout=self._log, stderr=subprocess.STDOUT
+            command, cwd=at, env=environment, stdout=self._log, stderr=subprocess.STDOUT
         )
         self.hand = Hand(display)
         self._file: Any = None
+        self._begun = ""
         self.events: list[dict[str, Any]] = []
         self.wait_for("ready")
 
@@ -114,12 +122,13 @@ class AppInWindow:
             if not self._trace.exists():
                 return []
             self._file = self._trace.open()
-        fresh = [json.loads(line) for line in self._file]
+        *whole, self._begun = (self._begun + self._file.read()).split("\n")  # a long line comes in pieces
+        fresh = [json.loads(line) for line in whole]
         self.events += fresh
         return fresh
 
     def wait_for(
-        self, event: str, matches: Callable[[dict[str, Any]], bool] = lambda _e: True, longest_s: float = 20.0
+        self, event: str, matches: Callable[[dict[str, Any]], bool] = lambda _e: True, longest_s: float = 60.0
     ) -> dict[str, Any]:
         """The first event of this name, from now on, that matches."""
         end = time.monotonic() + longest_s
@@ -138,7 +147,7 @@ class AppInWindow:
         self.read()
         return [one for one in self.events if one["event"] == event]
 
-    def target(self, text: str, kind: str = "", longest_s: float = 20.0) -> dict[str, Any]:
+    def target(self, text: str, kind: str = "", longest_s: float = 60.0) -> dict[str, Any]:
         """Where something that can be touched stands, once it is there."""
         end = time.monotonic() + longest_s
         while time.monotonic() < end:
