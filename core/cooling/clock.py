@@ -27,11 +27,11 @@ WIDEST_SCATTER = 0.3  # of a refresh: beyond it the clock tells next to nothing
 SEARCH_REL = 0.04  # either side of the refresh in the set-up
 CELLS = 4  # grid steps in the time in which clocks drift apart by one refresh
 SURE = 8.0  # log-likelihood by which a clock must beat its absence, beyond the number of clocks tried
-ROUNDS = 4
+ROUNDS = 3
 FAINT = 1e-7
 ODD = 0.05  # share of taps that may lie anywhere
-EDGE_s = 4e-3  # how far from steady a renewal may come
-EDGE_REL = 0.01  # the same, of a refresh
+EDGE_s = 2e-3  # how far from steady a renewal may come
+EDGE_REL = 0.003  # the same, of a refresh
 DOUBT = 2.5  # standard deviations by which scatter must exceed the set-up's before it counts
 
 
@@ -71,9 +71,10 @@ def find_clock(evidence: Evidence) -> Clock | None:
         count = np.round((since - phase) / refresh)
         miss = since - phase - count * refresh
         weight = _on_beat(miss, refresh, blur) / blur.tap_s**2
-        design = np.stack([np.ones_like(count), count])
-        covariance = np.asarray(np.linalg.pinv((design * weight) @ design.T), dtype=np.float64)
-        step = covariance @ (design @ (weight * miss))
+        total, first, second = weight.sum(), weight @ count, weight @ (count * count)
+        determinant = max(total * second - first * first, 1e-300)
+        covariance = np.array([[second, -first], [-first, total]]) / determinant
+        step = covariance @ np.array([weight @ miss, weight @ (count * miss)])
         phase, refresh = phase + float(step[0]), refresh + float(step[1])
     count = np.round((since - phase) / refresh)
     miss = since - phase - count * refresh

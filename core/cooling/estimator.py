@@ -20,6 +20,7 @@ from core.errors import NoAnswer
 
 LARGEST_LOG = 12.0  # of h [W/(m²·K)]: no air stream comes near
 LARGEST_DEVIATION = 1.0  # of ln h
+START_EVERY = 8  # rows from one search for the start to the next while a run goes on
 
 
 def fit_cooling(
@@ -39,7 +40,8 @@ def fit_cooling(
     setup : the bench; `recording.mode` says how to read the rows
     start_s : start of the fit [s] as a person set it; chosen from the data if None
     rulings : a person's word on single rows
-    warm : an earlier fit of the same run, to begin the search with
+    warm : an earlier fit of the same run, to begin the search with; where rows have come since, its start is kept
+        until the next row that `START_EVERY` divides
     profile : give the 95 % interval of h from its marginal posterior as well
 
     Raises
@@ -55,6 +57,8 @@ def fit_cooling(
     try:
         if start_s is not None:
             start_row, by = int(np.searchsorted(np.array(readings.time_s), start_s - 1e-9)), "person"
+        elif warm is not None and _keeps_start(warm, len(readings)):
+            start_row, by = int(np.searchsorted(np.array(readings.time_s), warm.window_s[0] - 1e-9)), "program"
         else:
             later = gather(readings, setup, model, latest_start(len(readings)), rulings)
             start_row, late = find_start(whole, later, guess, prior)
@@ -76,6 +80,10 @@ def fit_cooling(
             "check the readings, the recording mode and the display's settings."
         )
     return fit
+
+
+def _keeps_start(warm: CoolingFit, rows: int) -> bool:
+    return warm.start_by == "program" and rows > len(warm.used) and rows % START_EVERY != 0
 
 
 def _refuse_senseless(solution: Solution) -> None:

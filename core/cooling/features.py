@@ -53,7 +53,7 @@ def _bundle(parameters: Array) -> Array:
     return np.vstack([parameters, parameters + steps, parameters - steps])
 
 
-def _derivatives(values: Array) -> Array:
+def derivatives(values: Array) -> Array:
     """dT/dparameters from the bundle's columns, shape (n, p)."""
     p = len(STEPS)
     result: Array = (values[:, 1 : p + 1] - values[:, p + 1 :]) / (2.0 * STEPS)
@@ -64,11 +64,11 @@ def beat_features(model: CoolingModel, parameters: Array, bins: Bins, record_s: 
     """Temperatures at each beat, and one refresh before it where beat and refresh are not commensurate."""
     curve = model.curve(_bundle(parameters), record_s)
     newest, rate = curve.with_rate(bins.time_s)
-    values, slopes = [newest[:, 0]], [_derivatives(newest)]
+    values, slopes = [newest[:, 0]], [derivatives(newest)]
     if not blur.commensurate:
         oldest = curve.at(bins.time_s - blur.refresh_s)
         values.append(oldest[:, 0])
-        slopes.append(_derivatives(oldest))
+        slopes.append(derivatives(oldest))
     return Features(np.array(values), np.array(slopes), rate, *_start(curve), curve)
 
 
@@ -79,14 +79,14 @@ def change_features(model: CoolingModel, parameters: Array, bins: Bins, record_s
     curve = model.curve(_bundle(parameters), record_s)
     edges = np.concatenate([bins.upper_C[1:], bins.lower_C[:-1], bins.lower_C[1:]])
     time, shown, rate = _crossings(curve, edges)
-    slope = -_derivatives(shown) / rate[:, None]
+    slope = -derivatives(shown) / rate[:, None]
     taps = len(bins.time_s) - 1
     return Features(time.reshape(3, taps), slope.reshape(3, taps, -1), rate[:taps], *_start(curve), curve)
 
 
 def _start(curve: Curve) -> tuple[float, Array]:
     shown = curve.at(np.zeros(1))
-    return float(shown[0, 0]), _derivatives(shown)[0]
+    return float(shown[0, 0]), derivatives(shown)[0]
 
 
 @cache

@@ -52,7 +52,7 @@ def gauss_newton(
         scale = np.sqrt(np.diag(matrix))
         if not np.all(np.isfinite(matrix)) or not np.all(np.isfinite(gradient)) or np.any(scale == 0.0):
             raise NoAnswer(NOT_SETTLED)
-        covariance = np.linalg.pinv(matrix / np.outer(scale, scale)) / np.outer(scale, scale)
+        covariance = inverse(matrix, scale)
         step = covariance @ gradient
         deviation = np.sqrt(np.maximum(np.diag(covariance), 1e-300))
         rests = np.max(np.abs(step) / deviation) < tolerance
@@ -61,3 +61,13 @@ def gauss_newton(
         if rests:
             return Settled(point, covariance, done)
     return Settled(point, covariance, most_rounds)
+
+
+def inverse(matrix: Array, scale: Array) -> Array:
+    """Inverse of a symmetric matrix, scaled by the roots of its diagonal; the pseudo-inverse where it has none."""
+    outer = scale[:, None] * scale
+    try:
+        result: Array = np.linalg.inv(matrix / outer) / outer
+    except np.linalg.LinAlgError:
+        result = np.linalg.pinv(matrix / outer) / outer
+    return result

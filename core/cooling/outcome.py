@@ -38,7 +38,7 @@ def outcome(
     still = model.natural_W_m2K > 0.0
     ln_h, start_C, last = (float(one) for one in solution.parameters)
     offset = 0.0 if still else last
-    features = evidence.features(solution.parameters)
+    features = solution.tangent.at(solution.parameters)
     covariance = solution.covariance
     var_h, var_air = covariance[0, 0], 0.0 if still else covariance[2, 2]
     per_air = covariance[0, 2] / var_air if var_air > 0.0 else _per_air(evidence, features)
@@ -46,7 +46,7 @@ def outcome(
     measured = per_air if var_air == 0.0 else covariance[0, 2] * prior.air_weight
     window = (readings.time_s[start_row], readings.time_s[-1])
     grid = np.linspace(0.0, readings.time_s[-1], CURVE_POINTS)
-    curve = features.curve.at(grid)[:, 0]
+    curve = solution.tangent.shown_C(solution.parameters, grid)
     in_window = curve[grid >= window[0]]
     mean_C = float(np.mean(in_window))
     mid = (window[0] + window[1]) / 2.0

@@ -7,7 +7,7 @@ from dataclasses import dataclass
 import numpy as np
 from numpy.typing import NDArray
 
-from core.cooling.features import Features
+from core.cooling.features import Features, derivatives
 from core.cooling.joint import joint_posterior
 from core.cooling.likelihood import Evidence, Normal, as_normal
 from core.cooling.optimiser import gauss_newton
@@ -21,19 +21,6 @@ STRAIGHT = 1.0  # deviations of a reading over which its prediction is a straigh
 
 
 @dataclass(frozen=True, slots=True)
-class Solution:
-    """Parameters of the model with covariance, and the weighted points behind them."""
-
-    parameters: Array
-    covariance: Array
-    points: Array
-    weights: Array
-    effective: float
-    rounds: int
-    clock: tuple[float, float] | None  # phase and refresh of the display [s], where the taps tell them
-
-
-@dataclass(frozen=True, slots=True)
 class Tangent:
     """The features at a point, and near it along their straight lines."""
 
@@ -43,6 +30,26 @@ class Tangent:
     def at(self, point: Array) -> Features:
         """The features at a point nearby."""
         return self.features.moved(point - self.point)
+
+    def shown_C(self, point: Array, time_s: Array) -> Array:
+        """The sensor's temperature [°C] at a point nearby, at times [s]."""
+        bundle = self.features.curve.at(time_s)
+        result: Array = bundle[:, 0] + derivatives(bundle) @ (point - self.point)
+        return result
+
+
+@dataclass(frozen=True, slots=True)
+class Solution:
+    """Parameters of the model with covariance, and the weighted points behind them."""
+
+    parameters: Array
+    covariance: Array
+    points: Array
+    weights: Array
+    effective: float
+    rounds: int
+    tangent: Tangent
+    clock: tuple[float, float] | None  # phase and refresh of the display [s], where the taps tell them
 
 
 @dataclass(frozen=True, slots=True)
@@ -139,5 +146,6 @@ def solve(evidence: Evidence, guess: Array, prior: Prior, tangent: Tangent | Non
         weights=posterior.weights,
         effective=posterior.effective,
         rounds=found.rounds,
+        tangent=found.tangent,
         clock=clock,
     )
