@@ -109,10 +109,9 @@ def _scatter(miss: Array, on_beat: Array, blur: Blur) -> tuple[float, float]:
     Taps that scatter beyond doubt more than the set-up has it may do so because renewals come unsteadily."""
     steady = EDGE_s**2 + (EDGE_REL * blur.refresh_s) ** 2
     found = float(np.sum(on_beat * miss**2) / np.sum(on_beat))
-    beyond = found - blur.tap_s**2 * (1.0 + DOUBT * sqrt(2.0 / len(miss)))
-    if beyond <= 0.0:
+    if found <= blur.tap_s**2 * (1.0 + DOUBT * sqrt(2.0 / len(miss))):
         return blur.tap_s, sqrt(steady)
-    return sqrt(found), sqrt(steady + beyond)
+    return sqrt(found), sqrt(steady + found - blur.tap_s**2)
 
 
 def _with_candidates(

@@ -2,7 +2,9 @@
 
     python -m tests.bench.estimator_table [RUNS] [NAME]
 
-prints a row a scenario; 400 runs each on two processes if left out. NAME picks the scenarios that contain it."""
+prints a row a scenario, 400 runs each on two processes if left out; then late taps, times and memory. NAME picks the
+scenarios that contain it, and leaves out the rest. CRB is the bound for taps taken one by one: the fit goes below it
+where it hears the display's clock, which the bound does not know of."""
 
 import sys
 from multiprocessing import Pool
@@ -11,6 +13,7 @@ import numpy as np
 
 from core.cooling.estimator import fit_cooling
 from tests.bench.bound import information
+from tests.bench.late_taps import late_table, memory_line, time_table
 from tests.bench.rivals import by_curve_fit, by_lmfit, straight_line
 from tests.bench.scenarios import SCENARIOS
 
@@ -55,6 +58,11 @@ def main(runs, wanted=""):
                   f"{rivals[0]:8.3f}{rivals[1]:10.3f}{rivals[2]:8.3f}{min(rivals) / rms(error):7.1f}"
                   f"{np.mean(table[:, -3] > 0):6.3f}{table[:, -2].sum() / table[:, -1].sum():7.4f}",
                   flush=True)  # fmt: skip
+        if not wanted:
+            late_table(runs, pool)
+    if not wanted:
+        time_table()
+        memory_line()
 
 
 if __name__ == "__main__":
