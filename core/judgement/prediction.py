@@ -11,6 +11,7 @@ import numpy as np
 from core.bench.setup import Recording, Thermometer
 from core.judgement.propagation import Vector
 
+_HEARD = 0.3  # of a refresh: a hand steadier than this lets the fit hear the display's clock, and then tells no edge
 _NARROWEST = 0.02  # blur below this share of the width is not believed: no edge is sharper
 
 
@@ -102,20 +103,23 @@ def promise(
     -----
     T = T∞ + θ₀ e^(−βt) with ln β, ln θ₀ and T∞ unknown, T∞ with the measured air as prior. In mode change each
     tap places the curve in time within one refresh, or within one step of the display where that is passed
-    sooner; on a beat each reading places it within one step. Hand, meter noise and, on a beat that is no multiple
+    sooner; on a beat each reading places it within one step. A steady hand lets the fit hear the display's clock
+    (`core.cooling.clock`), and then blurs no edge; else hand, meter noise and, on a beat that is no multiple
     of the refresh, the unknown phase are the blur. The inverse of the summed information is the Cramér–Rao bound,
     which the fit comes within a few per cent of.
     """
     step, refresh, jitter = thermometer.resolution_K, thermometer.refresh_s, recording.tap_jitter_s
     beats = recording.beat_s / refresh if refresh > 0.0 else 1.0
     phase = 0.0 if abs(beats - round(beats)) < 0.01 * beats else refresh / sqrt(12.0)
+    heard = refresh > 0.0 and jitter <= _HEARD * refresh
+    hand = 0.0 if heard else jitter
     information = np.zeros((3, 3))
     time, count = 0.0, 0
     while True:
         excess = planned.first_K * exp(-planned.rate_s * time)
         slope = planned.rate_s * excess
         if mode == "change":
-            width, blur, gap = min(refresh, step / slope), hypot(jitter, thermometer.noise_K / slope), step / slope
+            width, blur, gap = min(refresh, step / slope), hypot(hand, thermometer.noise_K / slope), step / slope
             gap = max(refresh, gap)
         else:
             width, gap = step / slope, recording.beat_s
