@@ -14,6 +14,7 @@ from core.convection.correlation import Expectation
 from core.judgement.answer import Answer
 from core.judgement.expect import Expected
 from core.judgement.series import Series
+from core.judgement.stem import measured_stem_loss
 
 Form = dict[str, Any]
 
@@ -51,6 +52,7 @@ def expected_form(expected: Iterable[Expectation]) -> list[Form]:
 
 def answer_form(answer: Answer, about: Form) -> Form:
     """The answer to one run; `about` (its file, or its run in a folder) stands first."""
+    stem = measured_stem_loss(answer.fit, answer.setup)
     return {
         **about,
         "time_constant_s": answer.time_constant_s,
@@ -80,6 +82,8 @@ def answer_form(answer: Answer, about: Form) -> Form:
         "prandtl": answer.prandtl,
         "velocity_at_body_m_s": answer.velocity_m_s,
         "model": answer.fit.model,
+        "stem_loss_W_K": stem and stem.loss_W_K,
+        "stem_loss_u_W_K": stem and stem.u_W_K,
         "setup": setup_to_dict(answer.setup),
     }
 

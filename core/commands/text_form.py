@@ -10,6 +10,7 @@ from core.convection.correlation import Expectation
 from core.judgement.answer import Answer
 from core.judgement.expect import Expected
 from core.judgement.series import Series
+from core.judgement.stem import measured_stem_loss
 
 PER_AREA = "W/(m²·K)"
 
@@ -72,6 +73,10 @@ def answer_text(answer: Answer, title: str) -> str:
             f"{from_s:.1f} to {to_s:.1f} s",
         ),
     ]
+    stem = measured_stem_loss(answer.fit, answer.setup)
+    if stem is not None:
+        most = f"u, most of it from {stem.parts[0][0]}"
+        numbers.append(("stem loss", with_u(stem.loss_W_K, stem.u_W_K, "W/K"), most))
     parts = [f"{title}\n{answer.verdict.upper()}: {answer.reason}", columns(numbers)]
     if answer.readings_left_out:
         parts.append("left out\n" + columns((f"row {row}", reason) for row, reason in answer.readings_left_out))

@@ -41,7 +41,7 @@ def scores(evidence: Evidence, features: Features) -> tuple[Array, Array, Array]
         return miss_K / np.maximum(np.abs(features.rate_K_s), 1e-9), miss_K, inside + outside
     into, out_old, out_new = features.value
     tap = evidence.bins.time_s[rows] - blur.tap_lag_s
-    width = blur.tap_s
+    width = np.sqrt(blur.tap_s**2 + (blur.meter_K / np.maximum(np.abs(features.rate_K_s), 1e-6)) ** 2)
     if blur.refresh_s == 0.0:
         miss = tap - into
         return miss, miss * features.rate_K_s, miss / width

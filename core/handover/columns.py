@@ -12,6 +12,7 @@ from core.bench.setup import SECTIONS
 from core.bench.setup_check import descriptions
 from core.handover.csv_text import harmless
 from core.handover.session import ExportRun, ExportSession
+from core.judgement.stem import measured_stem_loss
 
 Datatype = Literal["string", "double", "integer", "boolean", "dateTime", "doubles"]
 
@@ -102,6 +103,14 @@ def _of_fit(name: str) -> RunValue:
     return lambda s, r: getattr(r.answer.fit, name) if r.answer else None
 
 
+def _stem(name: str) -> RunValue:
+    def value(_: ExportSession, r: ExportRun) -> object:
+        stem = measured_stem_loss(r.answer.fit, r.answer.setup) if r.answer else None
+        return getattr(stem, name) if stem else None
+
+    return value
+
+
 def _checks(_: ExportSession, r: ExportRun) -> object:
     return "; ".join(f"{one.name}: {one.outcome}" for one in r.answer.checks) if r.answer else None
 
@@ -135,6 +144,8 @@ RESULTS: tuple[tuple[Column, RunValue], ...] = (
         _of("h_radiation_W_m2K"),
     ),
     (Column("h_stem_W_m2K", "double", "Share of the stem loss in h_total.", "W/(m²·K)"), _of_fit("h_stem_W_m2K")),
+    (Column("stem_loss_W_K", "double", "Stem loss that a still-air run measured.", "W/K"), _stem("loss_W_K")),
+    (Column("stem_loss_u_W_K", "double", "Its standard uncertainty.", "W/K"), _stem("u_W_K")),
     (Column("time_constant_s", "double", "Time constant of the cooling.", "s"), _of("time_constant_s")),
     (
         Column("time_constant_u_s", "double", "Its standard uncertainty, readings and fit alone.", "s"),

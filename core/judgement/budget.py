@@ -9,7 +9,7 @@ that the fit gives."""
 
 from __future__ import annotations
 
-from dataclasses import dataclass
+from dataclasses import dataclass, replace
 
 import numpy as np
 
@@ -21,6 +21,7 @@ from core.judgement.answer import BudgetLine
 from core.judgement.montecarlo import Distribution, simulate
 from core.judgement.propagation import Expanded, Input, Model, Vector, propagate
 from core.judgement.relation import BODY_KEYS, READINGS, Anchor, Relation, anchor_of, mid_air_C, relate
+from core.judgement.stem import measured_stem_loss
 
 BODY_INPUTS = frozenset({*BODY_KEYS, "heat capacity", "conductivity"})
 BENCH_INPUTS = frozenset({"thermometer offset", "thermometer gain", "tap delay", "pressure", "humidity"})
@@ -132,11 +133,21 @@ def budget_of(fit: CoolingFit, setup: Setup) -> Budget:
     ----------
     JCGM 100:2008, clauses 5 and 6, F.1.2.4, G.4.
     """
-    return budget_from(setup, anchor_of(fit, setup))
+    return budget_from(_as_measured(fit, setup), anchor_of(fit, setup))
+
+
+def _as_measured(fit: CoolingFit, setup: Setup) -> Setup:
+    """The set-up, in a still-air run with the stem loss that the run itself measured."""
+    stem = measured_stem_loss(fit, setup)
+    if stem is None:
+        return setup
+    return replace(
+        setup, body=replace(setup.body, stem_loss_W_K=max(stem.loss_W_K, 0.0), stem_loss_u_W_K=stem.u_W_K)
+    )
 
 
 def monte_carlo_of(fit: CoolingFit, setup: Setup, *, seed: int, draws: int = 20_000) -> tuple[Distribution, ...]:
     """The same inputs drawn through the same relation (JCGM 101): h, and in forced flow Nu and Re."""
-    relation = relate(setup, anchor_of(fit, setup))
+    relation = relate(_as_measured(fit, setup), anchor_of(fit, setup))
     inputs = inputs_of(relation)
     return simulate(model_of(relation, inputs), inputs, seed=seed, draws=draws)

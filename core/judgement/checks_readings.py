@@ -134,7 +134,9 @@ def start(evidence: Evidence) -> Finding:
 
 
 def pattern(evidence: Evidence) -> Finding:
-    """Whether the residuals still hold a pattern, or the readings in doubt come in a row."""
+    """Whether the residuals still hold a pattern, or the readings in doubt come in a row.
+
+    In still air a pattern within what is known of natural convection says nothing."""
     fit, setup = evidence.fit, evidence.setup
     skips = setup.recording.mode == "change" and skipping_share(
         evidence.readings.reading_C, setup.thermometer.resolution_K
@@ -145,7 +147,9 @@ def pattern(evidence: Evidence) -> Finding:
         return unknown("Too few readings to tell.", PATTERN_PROBABILITY)
     doubted = [one.row for one in fit.left_out if one.cause not in {"start", "dropped"}]
     chance = min(found.probability, run_chance(doubted, len(evidence.readings)))
-    if chance > PATTERN_PROBABILITY:
+    small = not doubted and sum(one**2 for one in scores) < 1.5 * len(scores)
+    within_law = small and setup.recording.kind == "still-air"
+    if chance > PATTERN_PROBABILITY or within_law:
         return Finding("good", chance, PATTERN_PROBABILITY, "The residuals scatter as they should.")
     advice = (
         "The curve does not follow the readings, so something changed during the run: look at airspeed, inlet, "

@@ -1,4 +1,6 @@
-"""A run in still air measures what holder and stem carry away."""
+"""A run in still air measures what holder and stem carry away: what the readings tell where θ^(1/4) holds exactly.
+
+What nobody knows of natural convection comes on top (tests/judgement)."""
 
 import numpy as np
 import pytest
@@ -29,7 +31,7 @@ def test_the_stem_loss_lies_within_its_stated_uncertainty():
     for seed in range(30):
         fit = fit_cooling(still_run(seed), BENCH)
         score.append((fit.stem_loss_W_K - STEM_W_K) / fit.stem_loss_u_W_K)
-        assert fit.stem_loss_u_W_K < 0.02 * STEM_W_K
+        assert fit.stem_loss_u_W_K < 0.04 * STEM_W_K
     assert np.mean(np.abs(score) < 1.96) >= 0.85
     assert np.sqrt(np.mean(np.square(score))) < 1.4
 
