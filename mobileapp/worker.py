@@ -12,8 +12,9 @@ Deliver = Callable[[Callable[[], None]], Any]
 
 
 class LatestWorker:
-    """Runs what it is asked, one thing at a time. A request that is still waiting when a newer one of the same
-    `topic` comes is dropped: only the newest answer is of use."""
+    """Runs what it is asked, one thing at a time, the newest first: what stands on the screen now goes before what
+    was asked in passing. A request that is still waiting when a newer one of the same `topic` comes is dropped:
+    only the newest answer is of use."""
 
     def __init__(self, deliver: Deliver) -> None:
         self._deliver = deliver
@@ -31,6 +32,7 @@ class LatestWorker:
     ) -> None:
         """Have `work` done in the thread; `then` gets its value, or `failed` the sentence of its refusal."""
         with self._wake:
+            self._waiting.pop(topic, None)
             self._waiting[topic] = (work, then, failed)
             if self._thread is None:
                 self._thread = threading.Thread(target=self._run, name="fits", daemon=True)
@@ -51,8 +53,7 @@ class LatestWorker:
                     self._wake.wait()
                 if self._closed:
                     return
-                topic = next(iter(self._waiting))
-                work, then, failed = self._waiting.pop(topic)
+                _topic, (work, then, failed) = self._waiting.popitem()
             self._do(work, then, failed)
 
     def _do(self, work: Callable[[], Any], then: Callable[[Any], None], failed: Callable[[str], None]) -> None:

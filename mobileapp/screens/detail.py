@@ -2,14 +2,17 @@
 
 from __future__ import annotations
 
+from collections.abc import Callable
 from typing import Any
 
+from kivy.clock import Clock
 from kivy.properties import BooleanProperty, StringProperty
 
 from core.judgement.answer import Answer
 from core.judgement.improve import next_improvement
 from mobileapp.figures import number, percent, significant, with_uncertainty
-from mobileapp.judged import law_label, plus_minus
+from mobileapp.judged import check_label, law_label, plus_minus
+from mobileapp.trace import trace
 from mobileapp.widgets import badge, basics, decision, gauge, run_plots  # noqa: F401  the .kv of this screen uses them
 from mobileapp.widgets.badge import verdict_word
 from mobileapp.widgets.beside import PicturePage
@@ -41,6 +44,13 @@ class DetailScreen(PicturePage):
     busy = BooleanProperty(False)
     has_answer = BooleanProperty(False)
     checks_title = StringProperty("")
+    good_shown = BooleanProperty(False)
+    good_text = StringProperty("")
+
+    def __init__(self, **options: Any) -> None:
+        super().__init__(**options)
+        self._to_show: list[Callable[[Answer], None]] = []
+        self._next_part = Clock.create_trigger(self._show_part)
 
     def arrive(self, run: str = "", **_aim: Any) -> None:
         if run != self.run:
@@ -69,8 +79,8 @@ class DetailScreen(PicturePage):
         self.model.ask_answer(self.run, self._show, self._refused)
 
     def _refused(self, sentence: str) -> None:
-        self.busy = False
-        self.has_answer = False
+        self.busy = self.has_answer = False
+        self._to_show = []
         self.h_text = ""
         self.verdict, self.verdict_text = "none", _("No answer")
         self.reason = say(sentence)
@@ -89,11 +99,20 @@ class DetailScreen(PicturePage):
         self._show_start(answer)
         self.ids.plots.show(answer, self.model.readings_of(self.run))
         self._show_picked()
-        self._show_expected(answer)
-        self._show_doubts(answer)
-        self._show_checks(answer)
-        self._show_budget(answer)
-        self._show_numbers(answer)
+        parts = (self._show_expected, self._show_doubts, self._show_checks, self._show_budget, self._show_numbers)
+        self._to_show = [*parts, self._tell]
+        self._next_part()
+
+    def _show_part(self, *_args: Any) -> None:
+        """One sheet a frame, so that the curve stands there at once and no touch waits for the rest."""
+        if self._to_show:
+            self._to_show.pop(0)(self.answer)
+            self._next_part()
+
+    def _tell(self, answer: Answer) -> None:
+        left_out = [one.row for one in answer.fit.left_out]
+        shown = {"h": answer.h_W_m2K, "start_s": answer.window_s[0], "by": answer.fit.start_by, "left_out": left_out}
+        trace("detail", run=self.run, **shown, places=self.ids.plots.places())
 
     def _show_start(self, answer: Answer) -> None:
         start_s = answer.window_s[0]
@@ -138,10 +157,17 @@ class DetailScreen(PicturePage):
     def _show_checks(self, answer: Answer) -> None:
         box = self.ids.checks
         box.clear_widgets()
-        good = sum(check.outcome == "good" for check in answer.checks)
-        self.checks_title = _("Checks: {good} of {all} good").format(good=good, all=len(answer.checks))
+        good = [check for check in answer.checks if check.outcome == "good"]
+        self.checks_title = _("Checks: {good} of {all} good").format(good=len(good), all=len(answer.checks))
         for check in sorted(answer.checks, key=lambda one: WORST_FIRST[one.outcome]):
-            box.add_widget(CheckLine(check))
+            if check.outcome != "good" or self.good_shown:
+                box.add_widget(CheckLine(check))
+        self.good_text = "" if self.good_shown else "  ·  ".join(check_label(check.name) for check in good)
+
+    def toggle_good(self) -> None:
+        """Unfold the checks that are good, or fold them to their names."""
+        self.good_shown = not self.good_shown
+        self._show_checks(self.answer)
 
     def _show_budget(self, answer: Answer) -> None:
         box = self.ids.budget
@@ -157,7 +183,6 @@ class DetailScreen(PicturePage):
 
     def _show_numbers(self, answer: Answer) -> None:
         box = self.ids.numbers
-        box.clear_widgets()
         fit = answer.fit
         h_unit = "W/(m²·K)"
         tau = plus_minus(answer.time_constant_s, answer.time_constant_u_s)
@@ -176,8 +201,14 @@ class DetailScreen(PicturePage):
             (_("Readings used"), str(sum(fit.used))),
             (_("Coverage factor k"), number(answer.coverage_factor, 2)),
         ]
-        for name, value in lines:
-            box.add_widget(ValueLine(name=name, value=value))
+        shown = list(reversed(box.children))
+        if len(shown) != len(lines):
+            box.clear_widgets()
+            shown = [ValueLine() for _line in lines]
+            for line in shown:
+                box.add_widget(line)
+        for line, (name, value) in zip(shown, lines, strict=True):
+            line.name, line.value = name, value
 
     # ------------------------------------------------------------------ what a person says
 
@@ -217,6 +248,7 @@ class DetailScreen(PicturePage):
 
     def decide(self, decided: str, reason: str) -> None:
         self.model.decide(self.run, decided, reason)
+        trace("decided", run=self.run, decision=decided)
 
 
 def _ruled(ruled: dict[int, bool], row: int) -> str:

@@ -12,7 +12,6 @@ from kivy.properties import BooleanProperty, StringProperty
 from core.errors import BenchError
 from core.handover.archive import zipped
 from core.handover.share_page import PageTexts
-from core.handover.share_server import ShareServer, local_address
 from core.handover.sync import Synced, sync_session
 from mobileapp.device.android_downloads import save_to_downloads
 from mobileapp.device.find import on_android
@@ -45,7 +44,7 @@ class HandoverScreen(Page):
     share_told = StringProperty("")
     locked = BooleanProperty(False)
 
-    server: ShareServer | None = None
+    server: Any = None  # the ShareServer while it is open
 
     def arrive(self, **_aim: Any) -> None:
         session = self.model.session
@@ -147,6 +146,8 @@ class HandoverScreen(Page):
     def share(self) -> None:
         """Open the hand-over with the session as it is now."""
         self.share_told = ""
+        from core.handover.share_server import ShareServer, local_address  # asyncio is loaded when it is wanted
+
         try:
             name, data = zipped(self.model.export_session())
             self.server = ShareServer.open(name, data, local_address(), _page_texts())
@@ -181,8 +182,10 @@ class HandoverScreen(Page):
             return
         self.address = status.address
         self.code = f"{status.code[:3]} {status.code[3:]}"
-        self.locked = status.locked
         self.left_text = _("The code holds for {time} min more.").format(time=clock_time(status.left_s))
+        if status.locked and not self.locked:
+            trace("sharing locked")
+        self.locked = status.locked
         if status.locked:
             self.share_told = _("Locked after five wrong codes. Ask for a new code to go on.")
         elif status.fetched:

@@ -108,6 +108,7 @@ class IntakeScreen(Page):
         self.ids.page.scroll_y = 1
         self._build_choices()
         self._look()
+        trace("table", file=name, readable=self._readings is not None)
 
     def change(self, **parts: Any) -> None:
         """Read the table in another way."""

@@ -13,6 +13,7 @@ from mobileapp.figures import number, percent, significant, with_uncertainty
 from mobileapp.gathering import with_answers
 from mobileapp.judged import law_label, plus_minus
 from mobileapp.theme import look
+from mobileapp.trace import trace
 from mobileapp.widgets import basics, plot  # noqa: F401  the .kv of this screen uses them
 from mobileapp.widgets.basics import ChoicePress
 from mobileapp.widgets.beside import PicturePage
@@ -79,6 +80,7 @@ class SeriesScreen(PicturePage):
             high = max(run.reynolds for run in series.runs) * ROOM
             self.model.ask("bands", lambda: law_bands(answer, low, high), self._take_bands, self._no_bands)
         self._draw()
+        trace("law", C=series.C, m=series.m, next_m_s=series.next_velocity_m_s)
 
     def _answer_in_the_middle(self, series: Series) -> Answer | None:
         answers = {run.run: run.answer for run in self.model.export_session().runs}

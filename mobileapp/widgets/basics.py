@@ -20,7 +20,10 @@ from mobileapp.theme import look
 
 
 class Words(Label):
-    """Text that wraps within its width and is as tall as it needs."""
+    """Text that wraps within its width and is as tall as it needs. It takes no touch, not even disabled."""
+
+    def on_touch_down(self, touch: Any) -> bool:
+        return False
 
 
 class SoftWords(Words):
@@ -71,11 +74,24 @@ class Sheet(BoxLayout):
     ground = ColorProperty(look.panel)
 
 
+class Fold(BoxLayout):
+    """A stack that is folded away unless `shown`: no height, not seen, deaf to touches."""
+
+    shown = BooleanProperty(True)
+
+    def on_touch_down(self, touch: Any) -> bool:
+        return bool(self.shown and super().on_touch_down(touch))
+
+
 class Press(ButtonBehavior, Label):
-    """What can be pressed; at least as tall as a finger's target."""
+    """What can be pressed; at least as tall as a finger's target. Disabled it lets a touch through, as it may be
+    folded away over something else."""
 
     rim = ColorProperty((0, 0, 0, 0))
     fill = ColorProperty((0, 0, 0, 0))
+
+    def on_touch_down(self, touch: Any) -> bool:
+        return False if self.disabled else bool(super().on_touch_down(touch))
 
 
 class PlainPress(Press):

@@ -34,13 +34,13 @@ class DecisionBar(BoxLayout):
 
     def ask(self) -> None:
         """Show the reasons to choose from."""
+        self.asking = True
         box = self.ids.reasons
         box.clear_widgets()
         for reason in REASONS:
             button = PlainPress(text=_(reason))
             button.bind(on_release=lambda _button, why=reason: self.decide("discard", why))
             box.add_widget(button)
-        self.asking = True
 
     def decide(self, decision: str, reason: str = "") -> None:
         self.asking = False

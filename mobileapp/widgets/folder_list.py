@@ -9,6 +9,7 @@ from typing import Any
 from kivy.lang import Builder
 from kivy.properties import ListProperty, StringProperty
 from kivy.uix.boxlayout import BoxLayout
+from kivy.utils import escape_markup
 
 from mobileapp.widgets.basics import PlainPress, QuietPress
 from mobileapp.words import _
@@ -48,16 +49,16 @@ class FolderList(BoxLayout):
             self.fault = _("This folder cannot be read: {why}").format(why=error.strerror or str(error))
             return
         for path in folders[:MOST]:
-            box.add_widget(self._entry(QuietPress(text=f"{path.name} /", halign="left"), path, self.open))
+            box.add_widget(self._entry(QuietPress(text=f"{escape_markup(path.name)} /"), path, self.open))
         for path in files[:MOST]:
-            box.add_widget(self._entry(PlainPress(text=path.name, halign="left"), path, self._choose))
+            box.add_widget(self._entry(PlainPress(text=escape_markup(path.name)), path, self._choose))
         if not folders and not files:
             self.note = _("Nothing of use in here.") if self.suffixes else _("There is no folder in here.")
         elif max(len(folders), len(files)) > MOST:
             self.note = _("Only the first {count} are listed.").format(count=MOST)
 
     def _entry(self, button: Any, path: Path, act: Any) -> Any:
-        button.markup = False
+        button.halign = "left"
         button.bind(on_release=lambda _button: act(path))
         return button
 

@@ -215,6 +215,11 @@ class Plot(Widget):
 
         return sx, sy
 
+    def place_of(self, x: float, y: float) -> tuple[float, float]:
+        """Where a point of the axes stands on the screen."""
+        sx, sy = self._to_screen(self.view)
+        return sx(x), sy(y)
+
     def _draw(self, *_args: Any) -> None:
         drawing = self._drawing
         drawing.clear()

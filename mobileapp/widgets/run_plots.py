@@ -46,10 +46,9 @@ class PickPlot(Plot):
     def _pick(self, at: XY) -> None:
         if self.view is None or not self.pickable:
             return
-        sx, sy = self._to_screen(self.view)
-        row = min(self.pickable, key=lambda one: dist((sx(self.pickable[one][0]), sy(self.pickable[one][1])), at))
-        x, y = self.pickable[row]
-        if dist((sx(x), sy(y)), at) <= look.target / 2:
+        off = {row: dist(self.place_of(*point), at) for row, point in self.pickable.items()}
+        row = min(off, key=off.__getitem__)
+        if off[row] <= look.target / 2:
             self.dispatch("on_pick", row)
 
     def on_pick(self, row: int) -> None:
@@ -91,6 +90,16 @@ class RunPlots(BoxLayout):
         self.answer, self._readings = answer, readings
         self.ids.curve.handle_x = answer.window_s[0]
         self._draw()
+
+    def places(self) -> dict[str, tuple[float, float]]:
+        """Where on the window, from the top left, the start's grip and the middle reading stand; for the trace."""
+        curve, window = self.ids.curve, self.get_parent_window()
+        if window is None or curve.view is None:
+            return {}
+        middle = len(curve.pickable) // 2
+        points = {"start": (curve.handle_x, curve.view.y1), "middle": curve.pickable[middle]}
+        found = {name: curve.to_window(*curve.place_of(*point)) for name, point in points.items()}
+        return {name: (round(x), round(window.height - y)) for name, (x, y) in found.items()}
 
     def _draw(self) -> None:
         if self.answer is None:
