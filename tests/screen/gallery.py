@@ -386,6 +386,8 @@ class Gallery:
             touchable = hasattr(widget, "rim") or type(widget).__name__ in ("Tick", "RunRow", "LineInput", "Pad")
             if not touchable or widget.disabled or widget.opacity == 0 or self._off_stage(widget):
                 continue
+            if type(widget).__name__ == "Pad" and page.beat_mode and not page.waiting:
+                continue  # while the beat runs the digits are the targets; a touch on the pad counts for nothing
             if widget.height < 2 or widget.width < 2:
                 continue
             small = min(widget.width, widget.height) / per_mm
