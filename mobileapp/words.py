@@ -13,6 +13,7 @@ from pathlib import Path
 LOCALE = Path(__file__).parent / "locale"
 LANGUAGES = {"en": "English", "de": "Deutsch"}
 _SLOT = re.compile(r"\{(\w*)\}")
+_MINUS = re.compile(r"(?<![\w.,/-])-(?=\d)")
 _NUMBER = re.compile(r"[+−-]?\d+\.\d+( %)?")
 
 
@@ -75,6 +76,10 @@ def _patterns() -> tuple[tuple[re.Pattern[str], tuple[str, ...], str], ...]:
 
 def say(sentence: str) -> str:
     """A finished sentence of the core in the language in use; as it stands where the catalogue has none."""
+    return _MINUS.sub("−", _said(sentence))
+
+
+def _said(sentence: str) -> str:
     direct = _(sentence)
     if direct != sentence or _catalogue.language == "en":
         return direct

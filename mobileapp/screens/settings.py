@@ -14,6 +14,7 @@ from mobileapp.cautions import CAUTIONS, NO_REPLACEMENT
 from mobileapp.figures import THIN, number, percent
 from mobileapp.navigation import Page
 from mobileapp.theme import FONTS, PALETTES, TEXT_SCALES
+from mobileapp.trace import trace
 from mobileapp.widgets.basics import ChoicePress, SoftWords, Tick, Words
 from mobileapp.widgets.findings import ValueLine
 from mobileapp.words import LANGUAGES, _, say
@@ -64,6 +65,7 @@ class SettingsScreen(Page):
         for button in pressed.parent.children:
             button.chosen = button is pressed
         self.model.prefer(**{key: pressed.value})
+        trace("preferred", key=key, value=pressed.value)
 
     def _build_feedback(self) -> None:
         box = self.ids.feedback

@@ -9,6 +9,7 @@ from kivy.lang import Builder
 from kivy.properties import BooleanProperty, NumericProperty, StringProperty
 from kivy.uix.behaviors import ButtonBehavior
 from kivy.uix.boxlayout import BoxLayout
+from kivy.uix.gridlayout import GridLayout
 
 from core.judgement.answer import BudgetLine, Check
 from mobileapp.figures import percent
@@ -62,7 +63,7 @@ class BudgetBar(BoxLayout):
         )
 
 
-class DoubtLine(BoxLayout):
+class DoubtLine(GridLayout):
     """One reading in doubt, with the two words that a person can say about it."""
 
     row = NumericProperty(0)

@@ -130,7 +130,7 @@ class RunPlots(BoxLayout):
 
     def _draw_rest(self, view_x: XY, doubted: set[int]) -> None:
         fit, rest = self.answer.fit, self.ids.rest
-        in_time = any(one is not None for one in fit.residual_s)
+        in_time = self.answer.setup.recording.mode == "change"
         values = fit.residual_s if in_time else fit.residual_K
         rest.y_label = _("reading after the curve, s") if in_time else _("reading above the curve, K")
         time_s = self._readings.time_s

@@ -4,8 +4,6 @@ import json
 import subprocess
 import sys
 import time
-import urllib.error
-import urllib.request
 from pathlib import Path
 
 import pytest
@@ -14,8 +12,7 @@ sys.path.insert(0, str(Path(__file__).parent))
 from window import ROOT, AppInWindow, virtual_screen
 
 from core.demo.cabinet_bench import FOLDER
-from core.errors import HandoverFault
-from core.handover.share_server import local_address
+from core.handover.export import read_session
 
 pytestmark = pytest.mark.screen
 TALL = "1600x1500"  # so that nothing has to be scrolled to
@@ -133,24 +130,28 @@ def test_the_law_on_the_screen_is_that_of_the_command(app):
     assert shown["C"] == pytest.approx(law["C"], abs=2 * law["C_u"])
 
 
-def test_the_local_hand_over_lives_only_while_its_screen_is_open(app):
-    """Off at first; opened, its page answers and a wrong code gets nothing; left, nothing listens."""
-    try:
-        local_address()
-    except HandoverFault:
-        pytest.skip("this machine is on no local network")
+def test_the_local_hand_over_lives_only_while_its_screen_is_open():
+    """Off at first; opened, a wrong code gets nothing and the shown one the whole session; left, nothing listens."""
+    script = Path(__file__).with_name("share_once.py")
+    ran = subprocess.run([sys.executable, str(script)], capture_output=True, text=True, timeout=120, check=False)
+    assert ran.returncode == 0, ran.stderr[-2000:]
+    found = json.loads(ran.stdout.splitlines()[-1])
+    assert found["before"] == ""
+    assert (found["wrong"], found["right"], found["after"]) == (403, 200, 0)
+    assert found["files"] == ["SHA256SUMS", "csv-metadata.json", "readings.csv", "runs.csv"]
+    assert found["runs"] == len(read_session(FOLDER).runs)
+    assert found["shown"] == ["", ""]
+
+
+def test_what_a_person_likes_shows_at_once_and_is_kept(app):
+    """Language and theme change on the spot, on the screen where they were chosen, and lie in the preferences."""
     home(app)
-    go(app, "Hand over", "handover")
-    assert not app.named("sharing")
-    address = told(app, lambda: app.press("Open the hand-over"), "sharing")["address"]
-    assert b"unencrypted" in urllib.request.urlopen(address, timeout=5).read()
-    for _try in range(5):
-        with pytest.raises(urllib.error.HTTPError):
-            urllib.request.urlopen(f"{address}/session.zip", b"code=abcdef", timeout=5)
-    app.wait_for("sharing locked")
-    home(app)
-    with pytest.raises(urllib.error.URLError, match="refused"):
-        urllib.request.urlopen(address, timeout=5)
+    go(app, "Settings", "settings")
+    for word, value in (("Deutsch", "de"), ("Helle Halle", "hall"), ("English", "en"), ("Day", "day")):
+        told(app, lambda word=word: app.press(word), "preferred", value=value)
+    app.target("Bright hall")
+    kept = json.loads((app.data / "preferences.json").read_text(encoding="utf-8"))
+    assert (kept["language"], kept["palette"]) == ("en", "day")
 
 
 def test_a_loggers_table_becomes_a_run_with_its_answer(app):
