@@ -4,11 +4,12 @@ from __future__ import annotations
 
 from dataclasses import dataclass
 from functools import lru_cache
-from math import erf, exp, hypot, log, pi, sqrt
+from math import hypot, log, pi, sqrt
 
 import numpy as np
 
 from core.bench.setup import Recording, Thermometer
+from core.cooling.normal import cdf
 from core.judgement.propagation import Vector
 
 _HEARD = 0.3  # of a refresh: a hand steadier than this lets the fit hear the display's clock, and then tells no edge
@@ -46,8 +47,7 @@ def _edge_table() -> tuple[Vector, Vector]:
     values = []
     for r in ratios:
         x = np.linspace(-0.5 * r - 8.0, 0.5 * r + 8.0, 2001)
-        upper, lower = (np.array([erf(z / sqrt(2.0)) for z in x + side]) for side in (0.5 * r, -0.5 * r))
-        density = (upper - lower) / (2.0 * r)
+        density = (cdf(x + 0.5 * r) - cdf(x - 0.5 * r)) / r
         slope = (np.exp(-0.5 * (x + 0.5 * r) ** 2) - np.exp(-0.5 * (x - 0.5 * r) ** 2)) / (r * sqrt(2.0 * pi))
         keep = density > 1e-14
         values.append(float(np.sum(slope[keep] ** 2 / density[keep]) * (x[1] - x[0])))
@@ -75,12 +75,64 @@ def location_information(width: float, blur: float) -> float:
     ----------
     Cramér, Mathematical Methods of Statistics (1946), 32.3 (the bound that 1/J is).
     """
-    blur = max(blur, _NARROWEST * width, 1e-6)
+    return float(_locations(np.array([width]), np.array([blur]))[0])
+
+
+def _locations(width: Vector, blur: Vector) -> Vector:
+    blur = np.maximum(np.maximum(blur, _NARROWEST * width), 1e-6)
     ratio = width / blur
     ratios, values = _edge_table()
-    if ratio < ratios[0]:
-        return 1.0 / (blur**2 + width**2 / 12.0)
-    return float(np.interp(log(ratio), np.log(ratios), values)) / blur**2
+    seen = np.interp(np.log(np.maximum(ratio, ratios[0])), np.log(ratios), values) / blur**2
+    result: Vector = np.where(ratio < ratios[0], 1.0 / (blur**2 + width**2 / 12.0), seen)
+    return result
+
+
+def readings_to_come(
+    planned: Planned,
+    thermometer: Thermometer,
+    recording: Recording,
+    mode: str,
+    from_K: float,
+    sharp: bool = True,
+) -> tuple[Vector, int]:
+    """Fisher information of ln rate, first excess and air temperature, shape (3, 3), in the readings from an excess
+    of `from_K` to the last, and their number.
+
+    With `sharp` false a window counts by its standard deviation: a handful of readings seldom meets its edges.
+
+    Notes
+    -----
+    T = T∞ + θ₀ e^(−βt), t from the first excess. In mode change each tap places the curve in time within one
+    refresh, or within one step of the display where that is passed sooner; on a beat each reading places it within
+    one step. A steady hand lets the fit hear the display's clock (`core.cooling.clock`), and then blurs no edge;
+    else hand, meter noise and, on a beat that is no multiple of the refresh, the unknown phase are the blur.
+    """
+    step, refresh, jitter = thermometer.resolution_K, thermometer.refresh_s, recording.tap_jitter_s
+    rate = planned.rate_s
+    if mode == "change":
+        excess = _at_changes(rate, from_K, planned.last_K, step, refresh)
+    else:
+        whole = log(from_K / planned.last_K) / rate
+        excess = from_K * np.exp(-rate * np.arange(0.0, whole + 1e-9, recording.beat_s))
+    slope, time = rate * excess, np.log(planned.first_K / excess) / rate
+    noise = thermometer.noise_K / slope
+    if mode == "change":
+        hand = 0.0 if refresh > 0.0 and jitter <= _HEARD * refresh else jitter
+        width, blur = np.minimum(refresh, step / slope), np.hypot(hand, noise)
+    else:
+        beats = recording.beat_s / refresh if refresh > 0.0 else 1.0
+        phase = 0.0 if abs(beats - round(beats)) < 0.01 * beats else refresh / sqrt(12.0)
+        width, blur = step / slope, np.hypot(hypot(jitter, phase), noise)
+    told = _locations(width, blur) if sharp else 1.0 / (width**2 / 12.0 + blur**2)
+    gradient = np.stack([-time, excess / planned.first_K / slope, (1.0 - excess / planned.first_K) / slope])
+    return (gradient * told) @ gradient.T, len(excess)
+
+
+def _at_changes(rate_s: float, from_K: float, last_K: float, step_K: float, refresh_s: float) -> Vector:
+    """The excess at each change of the display: at each renewal while steps are skipped, then at each step."""
+    skipping_to = max(last_K, min(from_K, step_K / (rate_s * refresh_s) if refresh_s > 0.0 else from_K))
+    fast = from_K * np.exp(-rate_s * refresh_s * np.arange(log(from_K / skipping_to) / max(rate_s * refresh_s, 1e-12)))
+    return np.concatenate([fast, np.arange(skipping_to, last_K, -step_K)])
 
 
 def promise(
@@ -101,38 +153,15 @@ def promise(
 
     Notes
     -----
-    T = T∞ + θ₀ e^(−βt) with ln β, ln θ₀ and T∞ unknown, T∞ with the measured air as prior. In mode change each
-    tap places the curve in time within one refresh, or within one step of the display where that is passed
-    sooner; on a beat each reading places it within one step. A steady hand lets the fit hear the display's clock
-    (`core.cooling.clock`), and then blurs no edge; else hand, meter noise and, on a beat that is no multiple
-    of the refresh, the unknown phase are the blur. The inverse of the summed information is the Cramér–Rao bound,
-    which the fit comes within a few per cent of.
+    The rate, the first excess and the air temperature are unknown, the air temperature with the measured one as
+    prior. The inverse of the summed information (`readings_to_come`) is the Cramér–Rao bound, which the fit comes
+    within a few per cent of.
     """
-    step, refresh, jitter = thermometer.resolution_K, thermometer.refresh_s, recording.tap_jitter_s
-    beats = recording.beat_s / refresh if refresh > 0.0 else 1.0
-    phase = 0.0 if abs(beats - round(beats)) < 0.01 * beats else refresh / sqrt(12.0)
-    heard = refresh > 0.0 and jitter <= _HEARD * refresh
-    hand = 0.0 if heard else jitter
-    information = np.zeros((3, 3))
-    time, count = 0.0, 0
-    while True:
-        excess = planned.first_K * exp(-planned.rate_s * time)
-        slope = planned.rate_s * excess
-        if mode == "change":
-            width, blur, gap = min(refresh, step / slope), hypot(hand, thermometer.noise_K / slope), step / slope
-            gap = max(refresh, gap)
-        else:
-            width, gap = step / slope, recording.beat_s
-            blur = sqrt(jitter**2 + phase**2 + (thermometer.noise_K / slope) ** 2)
-        if excess < planned.last_K:
-            break
-        gradient = np.array([-planned.rate_s * time * excess, excess, 1.0]) / slope
-        information += location_information(width, blur) * np.outer(gradient, gradient)
-        time, count = time + gap, count + 1
-    prior = max(air_u_K, 1e-4) ** -2
-    information[2, 2] += prior
+    information, count = readings_to_come(planned, thermometer, recording, mode, planned.first_K)
     if count < 3:
         return Promise(float("inf"), 0.0, count)
+    prior = max(air_u_K, 1e-4) ** -2
+    information[2, 2] += prior
     spread = np.linalg.inv(information)
     per_air = float(spread[0, 2]) * prior
     return Promise(sqrt(max(float(spread[0, 0]) - (per_air * air_u_K) ** 2, 0.0)), per_air, count)
