@@ -9,7 +9,7 @@ no common time (a meter without a steady beat), no clock is found and each tap s
 
 from __future__ import annotations
 
-from dataclasses import dataclass
+from dataclasses import dataclass, replace
 from math import log, pi, sqrt
 
 import numpy as np
@@ -32,6 +32,8 @@ FAINT = 1e-7
 ODD = 0.05  # share of taps that may lie anywhere
 EDGE_s = 2e-3  # how far from steady a renewal may come
 EDGE_REL = 0.003  # the same, of a refresh
+REACH = 6.0  # deviations from the edges of its interval at which a renewal is beyond doubt inside
+QUIET = 3.0  # scatters of the hand within which a tap is beyond doubt good
 DOUBT = 2.5  # standard deviations by which scatter must exceed the set-up's before it counts
 
 
@@ -129,36 +131,98 @@ def _with_candidates(
     return Clock(phase_s, refresh_s, covariance, hand, edge, tap, around[tap, column], first)
 
 
-def clock_log_likelihood(
-    evidence: Evidence, features: Features, clock: Clock, shift: Array, phase_s: Array, refresh_s: Array
-) -> Array:
-    """Log-likelihood of the taps that count, all on one clock.
+@dataclass(frozen=True, slots=True)
+class Heard:
+    """The taps of a run on a clock, made ready for many sets of parameters.
 
-    Parameters
-    ----------
-    evidence, features : of the run, around a point of linearisation
-    clock : as found
-    shift : parameter shifts from that point, shape (sets, 3)
-    phase_s, refresh_s : of the clock [s], shape (sets,)
-    """
+    A tap whose renewal lies far inside its interval tells of the clock alone, as one square of its miss: all such
+    taps are summed beforehand into a square of the clock's two parameters (`quiet`: constant, pull and square).
+    The rest is gone through one by one; `tap`, `count`, `first` are their renewals as in `Clock`."""
+
+    clock: Clock
+    features: Features
+    time_s: Array
+    fault: Array
+    faulty: Array
+    edge_s: Array
+    meter: bool
+    tap: NDArray[np.intp]
+    count: Array
+    first: NDArray[np.intp]
+    quiet: tuple[float, Array, Array]
+    start_C: float
+    start_u_K: float
+
+    def log_likelihood(self, shift: Array, phase_s: Array, refresh_s: Array) -> Array:
+        """Log-likelihood, shape (sets,), of the taps that count.
+
+        Parameters
+        ----------
+        shift : parameter shifts from the point of linearisation, shape (sets, 3)
+        phase_s, refresh_s : of the clock [s], shape (sets,)
+        """
+        features, tap = self.features, self.tap
+        into, out_old, out_new = features.at(shift)
+        renewal = phase_s + self.count[:, None] * refresh_s
+        edge = self.edge_s[tap][:, None]
+        out = np.minimum(out_old + refresh_s, out_new)[tap]
+        hand = _normal(self.time_s[tap][:, None] - renewal, self.clock.hand_s)
+        if self.meter:
+            inside = np.maximum(cdf((renewal - into[tap]) / edge) - cdf((renewal - out) / edge), 0.0)
+        else:
+            within = np.minimum(renewal - into[tap], out - renewal) / (2.0 * sqrt(3.0) * edge)
+            inside = np.minimum(np.maximum(within + 0.5, 0.0), 1.0)
+        good = np.add.reduceat(hand * inside, self.first, axis=0) if len(self.first) else hand
+        logs = np.log((1.0 - self.faulty[:, None]) * good + (self.faulty * self.fault)[:, None] + 1e-300)
+        place = (features.start_C + shift @ features.start_slope - self.start_C) / self.start_u_K
+        constant, pull, square = self.quiet
+        away = np.stack([phase_s - self.clock.phase_s, refresh_s - self.clock.refresh_s])
+        quiet = constant + pull @ away - 0.5 * np.sum(away * (square @ away), axis=0)
+        result: Array = np.sum(logs, axis=0) + quiet - 0.5 * place**2
+        return result
+
+
+def heard(evidence: Evidence, features: Features, clock: Clock, covariance: Array) -> Heard:
+    """The taps that count on a clock, around a point of linearisation; `covariance` of the parameters, (3, 3)."""
     blur, rows = evidence.blur, evidence.rows
-    into, out_old, out_new = features.at(shift)
-    tap = clock.tap
-    renewal = phase_s + clock.count[:, None] * refresh_s
+    time = evidence.bins.time_s[rows] - blur.tap_lag_s
     meter = blur.meter_K / np.maximum(np.abs(features.rate_K_s), 1e-6)
-    edge = np.sqrt(clock.edge_s**2 + meter**2)[tap][:, None]
-    out = np.minimum(out_old + refresh_s, out_new)[tap]
-    time = evidence.bins.time_s[rows]
-    hand = _normal(time[tap][:, None] - blur.tap_lag_s - renewal, clock.hand_s)
-    if blur.meter_K > 0.0:
-        inside = np.maximum(cdf((renewal - into[tap]) / edge) - cdf((renewal - out) / edge), 0.0)
-    else:
-        within = np.minimum(renewal - into[tap], out - renewal) / (2.0 * sqrt(3.0) * edge)
-        inside = np.minimum(np.maximum(within + 0.5, 0.0), 1.0)
-    good = np.add.reduceat(hand * inside, clock.first, axis=0)
-    fault = faulty_density(time, features.value[0], blur)[:, None]
-    faulty = evidence.faulty()[:, None]
-    logs = np.log((1.0 - faulty) * good + faulty * fault + 1e-300)
-    place = (features.start_C + shift @ features.start_slope - evidence.start_C) / evidence.start_u_K
-    result: Array = np.sum(logs[evidence.counts[rows]], axis=0) - 0.5 * place**2
-    return result
+    edge = np.sqrt(clock.edge_s**2 + meter**2)
+    nearest = np.round((time - clock.phase_s) / clock.refresh_s)
+    renewal = clock.phase_s + nearest * clock.refresh_s
+    miss = time - renewal
+    inner = np.minimum(features.value[1] + clock.refresh_s, features.value[2])
+    margin = np.minimum(renewal - features.value[0], inner - renewal)
+    spread = np.max(np.einsum("kni,ij,knj->kn", features.slope, covariance, features.slope), axis=0)
+    own = clock.covariance
+    spread = np.sqrt(spread + own[0, 0] + nearest**2 * own[1, 1] + 2.0 * nearest * own[0, 1])
+    faulty = evidence.faulty()
+    counts = evidence.counts[rows]
+    alone = np.bincount(clock.tap, minlength=len(time)) == 1
+    quiet = counts & alone & (margin > REACH * spread + 3.0 * edge) & (np.abs(miss) < QUIET * clock.hand_s)
+    active = np.flatnonzero(counts & ~quiet)
+    k, m = nearest[quiet], miss[quiet] / clock.hand_s**2
+    square = np.array([[len(k), k.sum()], [k.sum(), k @ k]]) / clock.hand_s**2
+    constant = float(np.sum(np.log((1.0 - faulty[quiet]) * _normal(miss[quiet], clock.hand_s))))
+    keep = np.isin(clock.tap, active)
+    tap = np.searchsorted(active, clock.tap[keep])
+    return Heard(
+        clock=clock,
+        features=replace(
+            features,
+            value=features.value[:, active],
+            slope=features.slope[:, active],
+            rate_K_s=features.rate_K_s[active],
+        ),
+        time_s=time[active],
+        fault=faulty_density(evidence.bins.time_s[rows], features.value[0], blur)[active],
+        faulty=faulty[active],
+        edge_s=edge[active],
+        meter=blur.meter_K > 0.0,
+        tap=tap,
+        count=clock.count[keep],
+        first=np.searchsorted(tap, np.arange(len(active))),
+        quiet=(constant, np.array([m.sum(), m @ k]), square),
+        start_C=evidence.start_C,
+        start_u_K=evidence.start_u_K,
+    )

@@ -9,7 +9,7 @@ import numpy as np
 from numpy.typing import NDArray
 
 from core.cooling.beat_clock import middle_phase, phase_log_likelihood, wanders
-from core.cooling.clock import Clock, clock_log_likelihood, find_clock
+from core.cooling.clock import Clock, find_clock, heard
 from core.cooling.features import Features
 from core.cooling.likelihood import Evidence, log_likelihood
 from core.cooling.posterior import Posterior, adapt, moments
@@ -59,11 +59,12 @@ def _on_clock(
 ) -> tuple[Posterior, tuple[float, float]]:
     """Taps on a clock, of which phase and refresh are two more parameters."""
     free = len(covariance)
+    basis = widen(np.eye(free))
+    taps = heard(evidence, features, clock, basis.T @ covariance @ basis)
 
     def together(shift: Array) -> Array:
         whole = widen(shift[:, :free])
-        logs = clock_log_likelihood(evidence, features, clock, whole, shift[:, free], shift[:, free + 1])
-        return logs + log_prior(whole)
+        return taps.log_likelihood(whole, shift[:, free], shift[:, free + 1]) + log_prior(whole)
 
     first = np.zeros((free + 2, free + 2))
     first[:free, :free], first[free:, free:] = covariance, clock.covariance
