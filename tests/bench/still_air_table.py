@@ -7,7 +7,9 @@ with air properties at film temperature, its level drawn; emissivity, heat capac
 what their uncertainties allow."""
 
 import sys
+from collections.abc import Callable
 from dataclasses import dataclass, replace
+from functools import cache
 
 import numpy as np
 
@@ -55,18 +57,22 @@ def truth(row: Row, seed: int) -> Truth:
         mass_kg=body.mass_kg * (1.0 + 0.01 * rng.normal()),
     )
     across = body.diameter_m or body.side_a_m
-    along = body.side_b_m or across
-
-    def published(body_C: float, air_C: float) -> float:
-        return level * still_air(body.shape, across, along, max(body_C, air_C + 0.1), air_C, 101325.0, 0.4).h_W_m2K
-
-    def quarter(body_C: float, air_C: float) -> float:
-        return level * 8.0 * (max(body_C - air_C, 0.0) / 67.0) ** 0.25
-
+    law = _published(body.shape, across, body.side_b_m or across) if row.law == "published" else _quarter
     off = row.setup.air.temperature_u_K * rng.normal()
-    natural = quarter if row.law == "quarter" else published
     return Truth(replace(row.setup, body=real), 8.0, start_C=rng.uniform(86.0, 93.0), end_C=34.0,
-                 natural_W_m2K=natural, thermometer_offset_K=off)  # fmt: skip
+                 natural_W_m2K=lambda body_C, air_C: level * law(body_C - air_C), thermometer_offset_K=off)  # fmt: skip
+
+
+def _quarter(excess_K: float) -> float:
+    return 8.0 * (max(excess_K, 0.0) / 67.0) ** 0.25
+
+
+@cache
+def _published(shape: str, across_m: float, along_m: float) -> Callable[[float], float]:
+    """The published law in air of about 23 °C, tabulated."""
+    excess = np.linspace(1.0, 75.0, 150)
+    h = [still_air(shape, across_m, along_m, 23.1 + one, 23.1, 101325.0, 0.4).h_W_m2K for one in excess]
+    return lambda excess_K: float(np.interp(excess_K, excess, h))
 
 
 ROWS = tuple(
