@@ -24,6 +24,7 @@ FOLDER = Path(__file__).with_name("session")
 TITLE = "Drying cabinet bench (invented)"
 TRUE_C, TRUE_M = 0.52, 0.56
 SEED = 20260
+NOTE = "Invented: made by the simulator, measured by nobody; seed {seed}, true law Nu = {C}·Re^{m}·Pr^(1/3)."
 HAND = Hand(lag_s=0.23, jitter_s=0.05)
 
 BRASS = Body(shape="cylinder", diameter_m=0.016, length_m=0.110, material="brass", mass_kg=0.1874, emissivity=0.06)
@@ -67,6 +68,7 @@ class DemoRun:
     setup: Setup
     readings: Readings
     true_h_W_m2K: float
+    seed: int
     recorded_at: str
 
 
@@ -87,7 +89,8 @@ def demo_runs() -> tuple[DemoRun, ...]:
         setup = replace(BENCH, body=body, flow=flow)
         h = true_h_W_m2K(setup)
         truth = Truth(setup, h, start_C=91.3, creep_rel=after / before - 1.0, exponent=TRUE_M)
-        runs.append(DemoRun(name, setup, simulate(truth, SEED + count, HAND), h, wall_time))
+        seed = SEED + count
+        runs.append(DemoRun(name, setup, simulate(truth, seed, HAND), h, seed, wall_time))
     return tuple(runs)
 
 
@@ -105,7 +108,7 @@ def demo_session() -> ExportSession:
                 setup=run.setup,
                 readings=run.readings,
                 name=run.name,
-                note="Invented: made by the simulator, measured by nobody.",
+                note=NOTE.format(seed=run.seed, C=TRUE_C, m=TRUE_M),
                 invented=True,
                 recorded_at=run.recorded_at,
                 stamp_source="simulator",
