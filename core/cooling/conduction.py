@@ -26,6 +26,7 @@ Kind = Literal["wall", "cylinder", "sphere"]
 MODES = 6
 ROUNDS = 12  # Newton steps, halvings where one would leave the bracket
 ROUNDS_FIRST = 4
+CLOSING = 1.3  # rate of the mode that stands for those left out, over that of the last one followed
 POINTS = 40
 _ANGLES = pi * (np.arange(POINTS) + 0.5) / POINTS
 _SINES = np.sin(_ANGLES)
@@ -51,7 +52,8 @@ class Modes:
     """What conduction does for coefficients of shape (sets,).
 
     `share` of the lumped conductance, shape (sets,), and the early modes beside the lasting one: relative
-    `amplitude` and extra `rate_s` [1/s], shape (modes, sets)."""
+    `amplitude` and extra `rate_s` [1/s], shape (modes, sets). The last one stands for all that are left out, so that
+    the body is at one temperature at time 0."""
 
     share: Array
     amplitude: Array
@@ -168,4 +170,8 @@ def modes_of(
         rate = (rate[:, None, :] + own[None, :, :]).reshape(-1, len(coefficient_W_m2K))
     share = rate[0] * conductivity_W_mK / (coefficient_W_m2K * area_per_volume_1_m)
     order = 1 + np.argsort(rate[1:, 0])[: 2 * count]
-    return Modes(share, amplitude[order] / amplitude[0], (rate[order] - rate[0]) * diffusivity_m2_s)
+    early, extra = amplitude[order] / amplitude[0], (rate[order] - rate[0]) * diffusivity_m2_s
+    if count > 1:
+        early = np.vstack([early, 1.0 / amplitude[0] - 1.0 - early.sum(axis=0)])
+        extra = np.vstack([extra, CLOSING * extra[-1]])
+    return Modes(share, early, extra)
