@@ -77,7 +77,7 @@ def change_features(model: CoolingModel, parameters: Array, bins: Bins, record_s
 
     `bins` starts with the reading before the first tap; the features are those of the taps after it."""
     curve = model.curve(_bundle(parameters), record_s)
-    edges = np.concatenate([bins.upper_C[1:], bins.lower_C[:-1], bins.lower_C[1:]])
+    edges = np.concatenate([bins.upper_C[1:], bins.left_C[1:], bins.lower_C[1:]])
     time, shown, rate = _crossings(curve, edges)
     slope = -derivatives(shown) / rate[:, None]
     taps = len(bins.time_s) - 1

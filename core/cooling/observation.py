@@ -30,6 +30,7 @@ LATE_s = 4.0  # scale of the exponential that stands for late taps
 STRAY_s = 60.0  # width of the flat density that stands for anything else
 STRAY_BINS = 40.0
 COMMENSURATE = 1e-3
+SLACK_JITTERS = 4.0
 STILL_AIR_K = 0.03
 """How far a curve by any one law of natural convection lies off another along a run, and a room's air off even:
 the published laws differ from θ^(1/4) by up to 0.03 K once scale and stem loss are fitted."""
@@ -39,11 +40,15 @@ LEAST_BLUR_BINS = 0.005
 
 @dataclass(frozen=True, slots=True)
 class Bins:
-    """Readings as intervals [°C]: `lower` and `upper` edge of each, shape (n,)."""
+    """Readings as intervals [°C]: `lower` and `upper` edge of each, shape (n,).
+
+    `left_C` is the edge at which the temperature left the number that the display showed before: that of the row
+    before, or of the next number up where a change in between was not tapped."""
 
     time_s: Array
     lower_C: Array
     upper_C: Array
+    left_C: Array
 
 
 def bins_of(readings: Readings, setup: Setup) -> Bins:
@@ -51,7 +56,18 @@ def bins_of(readings: Readings, setup: Setup) -> Bins:
     shown = np.array(readings.reading_C)
     step = setup.thermometer.resolution_K
     lower = shown - step / 2 if setup.thermometer.rounding == "nearest" else shown
-    return Bins(np.array(readings.time_s), lower, lower + step)
+    left = np.concatenate([lower[:1] + step, lower[:-1]])
+    return Bins(np.array(readings.time_s), lower, lower + step, np.where(_missed(readings, setup), lower + step, left))
+
+
+def _missed(readings: Readings, setup: Setup) -> NDArray[np.bool_]:
+    """Taps two steps down or more for which the display cannot have skipped: a number before a skip stands for two
+    refreshes at the most, as each refresh takes more than one step then."""
+    time, shown = np.array(readings.time_s), np.array(readings.reading_C)
+    jumps = -np.diff(shown, prepend=shown[0]) > 1.5 * setup.thermometer.resolution_K
+    longest = 2.0 * setup.thermometer.refresh_s + SLACK_JITTERS * setup.recording.tap_jitter_s
+    result: NDArray[np.bool_] = jumps & (np.diff(time, prepend=time[0]) > longest)
+    return result
 
 
 @dataclass(frozen=True, slots=True)
