@@ -26,6 +26,7 @@ Kind = Literal["wall", "cylinder", "sphere"]
 MODES = 6
 ROUNDS = 12  # Newton steps, halvings where one would leave the bracket
 ROUNDS_FIRST = 4
+STEP = 1e-3  # of ln coefficient, for a difference
 CLOSING = 1.3  # rate of the mode that stands for those left out, over that of the last one followed
 POINTS = 40
 _ANGLES = pi * (np.arange(POINTS) + 0.5) / POINTS
@@ -51,11 +52,20 @@ class Factor:
 class Modes:
     """What conduction does for coefficients of shape (sets,).
 
-    `share` of the lumped conductance, shape (sets,), and the early modes beside the lasting one: relative
-    `amplitude` and extra `rate_s` [1/s], shape (modes, sets). The last one stands for all that are left out, so that
-    the body is at one temperature at time 0."""
+    `share` of the lumped conductance at `whole_W_m2K`, which goes with that coefficient to the power `exponent`
+    about there; `first`, the amplitude of the lasting mode at the sensor; the excess of the exposed faces (`face`)
+    and of the whole body (`mean`) over that at the sensor, the latter to the power `flattens` of the coefficient;
+    each of shape (sets,). Then the early modes beside the lasting one: relative `amplitude` and extra `rate_s`
+    [1/s], shape (modes, sets). The last one stands for all that are left out, so that the body is at one temperature
+    at time 0."""
 
     share: Array
+    whole_W_m2K: Array
+    exponent: Array
+    first: Array
+    face: Array
+    mean: Array
+    flattens: Array
     amplitude: Array
     rate_s: Array
 
@@ -141,6 +151,29 @@ def amplitudes(kind: Kind, zeta: Array, place: float) -> Array:
     return 2.0 / zeta * one / (zero**2 + one**2) * bessel(0, x)
 
 
+def _mean_over_place(kind: Kind, zeta: Array, place: float) -> Array:
+    """Mean of the lasting mode over the volume, over its value at a place."""
+    x = zeta * place
+    if kind == "wall":
+        wall: Array = np.sinc(zeta / pi) / np.cos(x)
+        return wall
+    if kind == "sphere":
+        ball: Array = 3.0 * (np.sin(zeta) - zeta * np.cos(zeta)) / zeta**3 / np.sinc(x / pi)
+        return ball
+    return 2.0 * bessel(1, zeta) / zeta / bessel(0, x)
+
+
+def _steepness(kind: Kind, zeta: Array) -> Array:
+    """dζ₁²/dBi, by differentiating the condition of the eigenvalues."""
+    if kind == "cylinder":
+        zero, one = bessel(0, zeta), bessel(1, zeta)
+        return 2.0 * zero**2 / (zero**2 + one**2)
+    sine, cosine = np.sin(zeta), np.cos(zeta)
+    along, across = (cosine, sine * cosine) if kind == "wall" else (sine, -sine * cosine)
+    steep: Array = 2.0 * zeta * along**2 / (zeta + across)
+    return steep
+
+
 def modes_of(
     factors: tuple[Factor, ...],
     coefficient_W_m2K: Array,
@@ -162,8 +195,15 @@ def modes_of(
     """
     amplitude = np.ones((1, len(coefficient_W_m2K)))
     rate = np.zeros((1, len(coefficient_W_m2K)))
+    grows = np.zeros(len(coefficient_W_m2K))
+    mean, flatter = np.ones((2, len(coefficient_W_m2K)))
     for factor in factors:
-        zeta = eigenvalues(factor.kind, coefficient_W_m2K * factor.half_m / conductivity_W_mK, count)
+        biot = coefficient_W_m2K * factor.half_m / conductivity_W_mK
+        zeta = eigenvalues(factor.kind, biot, count)
+        steep = _steepness(factor.kind, zeta[0]) * biot
+        grows += steep / factor.half_m**2
+        mean *= _mean_over_place(factor.kind, zeta[0], factor.place)
+        flatter = flatter * _mean_over_place(factor.kind, zeta[0] + STEP * steep / (2.0 * zeta[0]), factor.place)
         one = amplitudes(factor.kind, zeta, factor.place)
         own = zeta**2 / factor.half_m**2
         amplitude = (amplitude[:, None, :] * one[None, :, :]).reshape(-1, len(coefficient_W_m2K))
@@ -174,4 +214,14 @@ def modes_of(
     if count > 1:
         early = np.vstack([early, 1.0 / amplitude[0] - 1.0 - early.sum(axis=0)])
         extra = np.vstack([extra, CLOSING * extra[-1]])
-    return Modes(share, early, extra)
+    return Modes(
+        share=share,
+        whole_W_m2K=coefficient_W_m2K,
+        exponent=grows / rate[0],
+        first=amplitude[0],
+        face=share * mean,
+        mean=mean,
+        flattens=np.log(flatter / mean) / STEP,
+        amplitude=early,
+        rate_s=extra,
+    )

@@ -2,8 +2,9 @@
 
 m c(T) dT/dt = −w [(h A + G)(T − T∞(t)) + ε σ A (T⁴ − T_s⁴)]
 
-with w = 1 for a body at one temperature, and by conduction inside (`core.cooling.conduction`) below 1; the early
-modes of that conduction come on top.
+with w = 1 for a body at one temperature, and by conduction inside (`core.cooling.conduction`) below 1. Then T is the
+sensor's, the faces radiate at their own temperature, w follows the coefficient as radiation fades, air that drifts
+is felt with the delay of the body, and the early modes of conduction come on top.
 
 With θ = T − T∞ and z = ln(θ₀/θ) this becomes dz/dt = f(z, t), nearly constant in time. It is solved by Picard
 iteration on Chebyshev nodes: no time stepping, and the solution can be evaluated anywhere in the window."""
@@ -32,16 +33,58 @@ STEPS = np.array([1e-4, 1e-3, 1e-3])  # for central differences in the parameter
 LARGEST_Z = 30.0
 MEAN_EXCESS = 0.45  # of the first excess over the air: about the mean over a run
 NO_CONDUCTION = 1e-5  # Biot number (half thickness) below which conduction is left out
+NEARLY_EQUAL = 1e-6  # of a sensor's and a mode's time constants
 EARLY_MODES = 0.03  # Biot number above which the early modes are followed too
+
+
+@dataclass(frozen=True, slots=True)
+class Early:
+    """The early modes of conduction on top of the lasting one, as the sensor feels them.
+
+    `lasting_s` is the decay rate of the lasting mode at the start and `air_C` the air then, shape (sets,);
+    `body_rate_K_s` the rate of the lasting mode of the first set on the Chebyshev nodes."""
+
+    modes: Modes
+    lasting_s: Array
+    air_C: Array
+    air_rate_K_s: float
+    start_K: Array
+    body_rate_K_s: Array
+
+    def at(self, time_s: Array, body_C: Array, rate_K_s: Array, lag_s: float) -> tuple[Array, Array]:
+        """What they add to the temperatures [K], shape (times, sets), and to the rate of the first set [K/s].
+
+        Each mode A e^(−μt) is felt by a sensor of time constant s, which starts at the body's own temperature, as
+        A (e^(−μt) − sμ e^(−t/s))/(1 − sμ), and lags behind drifting air by A/μ of its change."""
+        modes, time = self.modes, time_s[None, :, None]
+        excess = body_C - self.air_C - self.air_rate_K_s * time_s[:, None]
+        behind = 1.0 - lag_s * (modes.rate_s + self.lasting_s)
+        behind = np.where(np.abs(behind) < NEARLY_EQUAL, NEARLY_EQUAL, behind)
+        each = (modes.amplitude / behind)[:, None, :] * np.exp(-modes.rate_s[:, None, :] * time)
+        share, ending = each.sum(axis=0), np.einsum("mn,m->n", each[:, :, 0], modes.rate_s[:, 0])
+        more = excess * share
+        faster = (rate_K_s - self.air_rate_K_s) * share[:, 0] - excess[:, 0] * ending
+        if lag_s > 0.0:
+            own = self.start_K * np.sum(modes.amplitude * (1.0 - behind) / behind, axis=0)
+            settling = np.exp(-time_s / lag_s)
+            more = more - own * settling[:, None]
+            faster = faster + own[0] * settling / lag_s
+        if self.air_rate_K_s != 0.0:
+            total = modes.rate_s + self.lasting_s
+            late = self.air_rate_K_s * modes.first * modes.amplitude
+            gone = np.exp(-total[:, None, :] * time)
+            more = more - np.sum((late / total)[:, None, :] * (1.0 - gone), axis=0)
+            faster = faster - late[:, 0] @ gone[:, :, 0]
+        return more, faster
 
 
 @dataclass(frozen=True, slots=True)
 class Curve:
     """Temperatures over a record for one or more sets of parameters.
 
-    `sensor_C`, `body_C` and `rate_K_s` (of the sensor) stand on the Chebyshev nodes, shape (NODES, sets). The
-    sensor's own transient, of amplitude `fading_K` and time constant `lag_s`, and the early modes of conduction,
-    relative to the excess over the air, come on top."""
+    `sensor_C`, `body_C` and `rate_K_s` (of the sensor) stand on the Chebyshev nodes, shape (NODES, sets), without
+    what comes on top: the sensor's own transient, of amplitude `fading_K` and time constant `lag_s`, and the early
+    modes of conduction."""
 
     length_s: float
     sensor_C: Array
@@ -49,9 +92,7 @@ class Curve:
     rate_K_s: Array
     fading_K: Array
     lag_s: float
-    air_C: Array
-    air_rate_K_s: float
-    modes: Modes | None
+    early: Early | None
 
     def at(self, time_s: Array) -> Array:
         """Sensor temperature [°C] at times [s], shape (len(time_s), sets); beyond the record straight on."""
@@ -67,8 +108,11 @@ class Curve:
         """The same where the interpolation matrix for these times is known already."""
         shown = basis @ self.sensor_C
         rate = basis @ self.rate_K_s[:, 0]
-        if self.modes is not None:
-            shown, rate = self._with_modes(shown, rate, time_s)
+        if self.early is not None:
+            body = shown if self.lag_s == 0.0 else basis @ self.body_C
+            body_rate = rate if self.lag_s == 0.0 else basis @ self.early.body_rate_K_s
+            more, faster = self.early.at(np.maximum(time_s, 0.0), body, body_rate, self.lag_s)
+            shown, rate = shown + more, rate + faster
         if self.lag_s > 0.0:
             fading = np.exp(-np.maximum(time_s, 0.0) / self.lag_s)
             shown = shown + self.fading_K * fading[:, None]
@@ -80,19 +124,6 @@ class Curve:
                 beyond_s[:, None] * self.rate_K_s[-1],
             )
         return shown, rate
-
-    def _with_modes(self, shown: Array, rate: Array, time_s: Array) -> tuple[Array, Array]:
-        modes = self.modes
-        if modes is None:
-            return shown, rate
-        time = np.maximum(time_s, 0.0)
-        each = modes.amplitude[:, None, :] * np.exp(-modes.rate_s[:, None, :] * time[None, :, None])
-        more = np.sum(each, axis=0)
-        air = self.air_C + self.air_rate_K_s * time[:, None]
-        change = -np.sum(each[:, :, 0] * modes.rate_s[:, None, 0], axis=0)
-        first = shown[:, 0] - air[:, 0]
-        rate = rate + (rate - self.air_rate_K_s) * more[:, 0] + first * change
-        return shown + (shown - air) * more, rate
 
 
 @dataclass(frozen=True, slots=True)
@@ -125,38 +156,49 @@ class CoolingModel:
         theta0 = np.maximum(start_C - air[0], 1e-3)
         integrate = chebyshev.integration() * (length_s / 2.0)
         modes = None if still else self.modes(h, start_C, air[0])
-        inside = 1.0 if modes is None else modes.share
         first = h * self.natural_W_m2K * theta0**0.25 if still else h
         conductance = first * self.body.area_m2 + (parameters[:, 2] if still else self.stem_loss_W_K)
         z = conductance / self.body.capacity_J_K(float(np.mean(start_C))) * time
         walls = self.walls_C + offset if self.walls_C == self.air_C else self.walls_C
+        drift = self.air_rate_K_s * (1.0 if modes is None else modes.first)
         for _ in range(ROUNDS):
             theta = theta0 * np.exp(-np.clip(z, -LARGEST_Z, LARGEST_Z))
-            body = air + theta
             if still:
                 conductance = self._still_W_K(h, theta, parameters[:, 2])
-            rate = (
-                inside * (conductance * theta + self._radiation_W(body, walls)) / self.body.capacity_J_K_at(body)
-            )
-            new = integrate @ ((rate + self.air_rate_K_s) / theta)
+            cooling, flatter = self._cooling_K_s(theta, air, conductance, walls, modes)
+            new = integrate @ ((cooling + drift) / theta) + flatter
             change = float(np.max(np.abs(new - z)))
             z = new
             if change < TOLERANCE:
                 break
         theta = theta0 * np.exp(-np.clip(z, -LARGEST_Z, LARGEST_Z))
-        body = air + theta
         if still:
             conductance = self._still_W_K(h, theta, parameters[:, 2])
-        rate = -inside * (conductance * theta + self._radiation_W(body, walls)) / self.body.capacity_J_K_at(body)
-        early = modes if modes is not None and len(modes.amplitude) else None
+        cooling, _ = self._cooling_K_s(theta, air, conductance, walls, modes)
+        body, rate = air + theta, self.air_rate_K_s - drift - cooling
+        early = None
+        if modes is not None and len(modes.amplitude):
+            early = Early(modes, cooling[0] / theta0, air[0], self.air_rate_K_s, theta0, rate[:, 0])
         if self.lag_s == 0.0:
-            return Curve(length_s, body, body, rate, np.zeros(len(h)), 0.0, air[0], self.air_rate_K_s, early)
+            return Curve(length_s, body, body, rate, np.zeros(len(h)), 0.0, early)
         derivative = chebyshev.differentiation() * (2.0 / length_s)
         steady = np.linalg.solve(np.eye(chebyshev.NODES) + self.lag_s * derivative, body)
-        fading = body[0] - steady[0]
-        return Curve(
-            length_s, steady, body, derivative @ steady, fading, self.lag_s, air[0], self.air_rate_K_s, early
-        )
+        return Curve(length_s, steady, body, derivative @ steady, body[0] - steady[0], self.lag_s, early)
+
+    def _cooling_K_s(
+        self, excess_K: Array, air_C: Array, conductance_W_K: Array | float, walls_C: Array | float, modes: Modes | None
+    ) -> tuple[Array, Array | float]:
+        """How fast the sensor's excess falls in steady air [K/s], any shape that ends in (sets,); and by how much its
+        logarithm has fallen since the first row as the body became more even."""
+        if modes is None:
+            body_C = air_C + excess_K
+            watts = conductance_W_K * excess_K + self._radiation_W(body_C, walls_C)
+            return watts / self.body.capacity_J_K_at(body_C), 0.0
+        area, face_K = self.body.area_m2, modes.face * excess_K
+        whole = (conductance_W_K + self._radiation_W(air_C + face_K, walls_C) / face_K) / area
+        lumped = modes.whole_W_m2K * area * excess_K / self.body.capacity_J_K_at(air_C + modes.mean * excess_K)
+        cooling = modes.share * (whole / modes.whole_W_m2K) ** modes.exponent * lumped
+        return cooling, modes.flattens * np.log(whole / whole[0])
 
     def _still_W_K(self, scale: Array, excess_K: Array, stem_W_K: Array) -> Array:
         result: Array = scale * self.natural_W_m2K * excess_K**0.25 * self.body.area_m2 + stem_W_K
