@@ -6,6 +6,7 @@ from pathlib import Path
 from typing import Any
 
 from kivy.clock import Clock
+from kivy.core.text import Label as CoreLabel
 from kivy.graphics.texture import Texture
 from kivy.lang import Builder
 from kivy.properties import BooleanProperty, ColorProperty, NumericProperty, ObjectProperty, StringProperty
@@ -17,6 +18,7 @@ from kivy.uix.widget import Widget
 
 from mobileapp.contrast import mixed
 from mobileapp.theme import look
+from mobileapp.wrapping import broken
 
 
 class Words(Label):
@@ -36,6 +38,23 @@ class SmallWords(Words):
 
 class LeadWords(Words):
     """The first sentence of a screen."""
+
+
+class PathWords(Words):
+    """Words that may hold the path of a folder (`said`), broken where it would not fit in one line."""
+
+    said = StringProperty("")
+
+    def __init__(self, **options: Any) -> None:
+        super().__init__(**options)
+        fit = Clock.create_trigger(self._fit, -1)
+        self.bind(said=fit, width=fit, font_size=fit, font_name=fit)
+        fit()
+
+    def _fit(self, *_args: Any) -> None:
+        ruler = CoreLabel(font_name=self.font_name, font_size=self.font_size)
+        room = self.width - self.padding[0] - self.padding[2]
+        self.text = broken(self.said, room, lambda words: float(ruler.get_extents(words)[0]))
 
 
 class TitleWords(Words):

@@ -71,7 +71,10 @@ def _arguments() -> argparse.Namespace:
 
 
 def _prepare(arguments: argparse.Namespace) -> None:
+    home = Path(tempfile.mkdtemp(prefix="gallery")) / "a_home_with_a_very_long_name/the_measuring_room"
+    home.mkdir(parents=True)
     os.environ.update(
+        HOME=str(home),
         SDL_VIDEODRIVER="offscreen",
         SDL_AUDIODRIVER="dummy",
         KIVY_DPI=str(160 * float(arguments.density)),
