@@ -48,5 +48,4 @@ def differentiation() -> Array:
 
 def interpolation(x: Array) -> Array:
     """Matrix that takes values on the nodes to values at `x` in [−1, 1], shape (len(x), NODES)."""
-    angles = np.arccos(np.clip(x, -1.0, 1.0))
-    return np.cos(angles[:, None] * np.arange(NODES)) @ _to_coefficients()
+    return np.cos(np.arccos(x)[:, None] * np.arange(NODES)) @ _to_coefficients()

@@ -55,11 +55,16 @@ class Clock:
     first: NDArray[np.intp]
 
 
+def could_be_heard(blur: Blur) -> bool:
+    """Whether the hand scatters little enough for the taps to keep the display's clock."""
+    return blur.tap_s <= WIDEST_SCATTER * blur.refresh_s
+
+
 def find_clock(evidence: Evidence) -> Clock | None:
     """The clock that the taps keep in common, or None where they keep none, or where it would tell nothing."""
     blur = evidence.blur
     taps = evidence.bins.time_s[1:] - blur.tap_lag_s
-    if evidence.mode != "change" or len(taps) < FEWEST_TAPS or blur.tap_s > WIDEST_SCATTER * blur.refresh_s:
+    if evidence.mode != "change" or len(taps) < FEWEST_TAPS or not could_be_heard(blur):
         return None
     middle = float(np.mean(taps))
     since = taps - middle
@@ -131,6 +136,11 @@ def _with_candidates(
     return Clock(phase_s, refresh_s, covariance, hand, edge, tap, around[tap, column], first)
 
 
+def later_taps(clock: Clock, taps: Array) -> Clock:
+    """The same clock for taps [s, person's lag taken off] that came after it was found."""
+    return _with_candidates(clock.phase_s, clock.refresh_s, clock.covariance, taps, (clock.hand_s, clock.edge_s))
+
+
 @dataclass(frozen=True, slots=True)
 class Heard:
     """The taps of a run on a clock, made ready for many sets of parameters.
@@ -193,18 +203,19 @@ def heard(evidence: Evidence, features: Features, clock: Clock, covariance: Arra
     miss = time - renewal
     inner = np.minimum(features.value[1] + clock.refresh_s, features.value[2])
     margin = np.minimum(renewal - features.value[0], inner - renewal)
-    spread = np.max(np.einsum("kni,ij,knj->kn", features.slope, covariance, features.slope), axis=0)
+    spread = np.max(np.sum((features.slope @ covariance) * features.slope, axis=2), axis=0)
     own = clock.covariance
     spread = np.sqrt(spread + own[0, 0] + nearest**2 * own[1, 1] + 2.0 * nearest * own[0, 1])
     faulty = evidence.faulty()
     counts = evidence.counts[rows]
     alone = np.bincount(clock.tap, minlength=len(time)) == 1
     quiet = counts & alone & (margin > REACH * spread + 3.0 * edge) & (np.abs(miss) < QUIET * clock.hand_s)
-    active = np.flatnonzero(counts & ~quiet)
+    listened = counts & ~quiet
+    active = np.flatnonzero(listened)
     k, m = nearest[quiet], miss[quiet] / clock.hand_s**2
     square = np.array([[len(k), k.sum()], [k.sum(), k @ k]]) / clock.hand_s**2
     constant = float(np.sum(np.log((1.0 - faulty[quiet]) * _normal(miss[quiet], clock.hand_s))))
-    keep = np.isin(clock.tap, active)
+    keep = listened[clock.tap]
     tap = np.searchsorted(active, clock.tap[keep])
     return Heard(
         clock=clock,

@@ -2,14 +2,17 @@
 
 from __future__ import annotations
 
+from dataclasses import dataclass
+
 import numpy as np
 from numpy.typing import NDArray
 
 from core.bench.readings import Readings
 from core.cooling.features import Features
 from core.cooling.fit import LeftOut
-from core.cooling.likelihood import Evidence, densities
-from core.cooling.normal import cdf, quantile
+from core.cooling.likelihood import Evidence, densities, share_of
+from core.cooling.normal import cdf, density, quantile
+from core.cooling.observation import faulty_density, latest_s, tap_width_s
 
 Array = NDArray[np.float64]
 
@@ -17,58 +20,66 @@ DOUBLED_s = 0.35  # a second tap sooner than this after another, where the displ
 DOUBTFUL = 0.5  # a reading is named where the fault is likelier than the good reading
 
 
-def share_good(evidence: Evidence, features: Features) -> Array:
-    """Probability of each feature row that it is a good reading, given the fitted curve."""
-    good, fault = densities(evidence, features.value[:, :, None], features.rate_K_s)
-    faulty = evidence.faulty()
-    result: Array = (1.0 - faulty) * good[:, 0] / ((1.0 - faulty) * good[:, 0] + faulty * fault[:, 0] + 1e-300)
-    return result
+@dataclass(frozen=True, slots=True)
+class Misses:
+    """How each feature row lies to the fitted curve, shape (n,): its miss in time [s] and in temperature [K], its
+    standard score (the normal quantile of its place within what the curve allows), and the probability that it is
+    a good reading."""
+
+    miss_s: Array
+    miss_K: Array
+    score: Array
+    share_good: Array
 
 
-def scores(evidence: Evidence, features: Features) -> tuple[Array, Array, Array]:
-    """Per feature row: miss in time [s], miss in temperature [K], and the standard score of the reading.
+def misses(evidence: Evidence, features: Features) -> Misses:
+    """All rows beside the curve."""
+    return (_of_beats if evidence.mode == "beat" else _of_taps)(evidence, features)
 
-    The score is the normal quantile of the reading's place within what the curve allows."""
+
+def _of_beats(evidence: Evidence, features: Features) -> Misses:
     rows, blur = evidence.rows, evidence.blur
-    if evidence.mode == "beat":
-        shown = np.mean(features.value, axis=0)
-        lower, upper = evidence.bins.lower_C[rows], evidence.bins.upper_C[rows]
-        miss_K = (lower + upper) / 2.0 - shown
-        spread = max(blur.meter_K, 0.02 * float(upper[0] - lower[0]))
-        place = (shown - lower) / (upper - lower)
-        outside = np.where(place < 0.0, shown - lower, np.where(place > 1.0, shown - upper, 0.0)) / spread
-        inside = quantile(np.clip(place, 1e-3, 1.0 - 1e-3))
-        return miss_K / np.maximum(np.abs(features.rate_K_s), 1e-9), miss_K, inside + outside
+    shown = np.mean(features.value, axis=0)
+    lower, upper = evidence.bins.lower_C[rows], evidence.bins.upper_C[rows]
+    miss_K = (lower + upper) / 2.0 - shown
+    spread = max(blur.meter_K, 0.02 * float(upper[0] - lower[0]))
+    place = (shown - lower) / (upper - lower)
+    outside = np.where(place < 0.0, shown - lower, np.where(place > 1.0, shown - upper, 0.0)) / spread
+    inside = quantile(np.clip(place, 1e-3, 1.0 - 1e-3))
+    good, fault = densities(evidence, features.value[:, :, None], features.rate_K_s)
+    share = share_of(good[:, 0], fault[:, 0], evidence.faulty())
+    return Misses(miss_K / np.maximum(np.abs(features.rate_K_s), 1e-9), miss_K, inside + outside, share)
+
+
+def _of_taps(evidence: Evidence, features: Features) -> Misses:
+    blur, time = evidence.blur, evidence.bins.time_s[evidence.rows]
     into, out_old, out_new = features.value
-    tap = evidence.bins.time_s[rows] - blur.tap_lag_s
-    width = np.sqrt(blur.tap_s**2 + (blur.meter_K / np.maximum(np.abs(features.rate_K_s), 1e-6)) ** 2)
+    tap, width = time - blur.tap_lag_s, tap_width_s(features.rate_K_s, blur)
+    fault = faulty_density(time, into, blur)
     if blur.refresh_s == 0.0:
-        miss = tap - into
-        return miss, miss * features.rate_K_s, miss / width
-    high = np.maximum(np.minimum(out_old + blur.refresh_s, out_new), into + 1e-6)
+        miss, score = tap - into, (tap - into) / width
+        good = density(score) / width
+        return Misses(miss, miss * features.rate_K_s, score, share_of(good, fault, evidence.faulty()))
+    high = latest_s(into, out_old, out_new, blur)
     below, above = (tap - into) / width, (tap - high) / width
-    ramp = _ramp(below) - _ramp(above)
-    place = np.clip(ramp * width / (high - into), 0.0, 1.0)
+    since, until = cdf(below), cdf(above)
+    ramp = below * since + density(below) - above * until - density(above)
+    place = np.minimum(np.maximum(ramp * width / (high - into), 1e-4), 1.0 - 1e-4)
     edge = np.where(below < -3.0, below, np.where(above > 3.0, above, 0.0))
-    score = np.where(edge != 0.0, edge, quantile(np.clip(place, 1e-4, 1.0 - 1e-4)))
+    score = np.where(edge != 0.0, edge, quantile(place))
     miss = tap - (into + high) / 2.0
-    return miss, miss * features.rate_K_s, score
+    good = np.maximum(since - until, 0.0) / blur.refresh_s
+    return Misses(miss, miss * features.rate_K_s, score, share_of(good, fault, evidence.faulty()))
 
 
-def _ramp(u: Array) -> Array:
-    result: Array = u * cdf(u) + np.exp(-0.5 * u * u) / np.sqrt(2.0 * np.pi)
-    return result
-
-
-def doubtful(evidence: Evidence, features: Features, readings: Readings) -> list[LeftOut]:
+def doubtful(evidence: Evidence, found: Misses, readings: Readings) -> list[LeftOut]:
     """The rows that are likelier a person's fault than a good reading."""
-    share = share_good(evidence, features)
-    miss_s, miss_K, _ = scores(evidence, features)
-    named = []
-    for place, row in enumerate(evidence.rows):
-        if share[place] < DOUBTFUL and evidence.counts[row] and not evidence.certain[row]:
-            named.append(_named(int(row), float(miss_s[place]), float(miss_K[place]), readings, evidence))
-    return named
+    rows = evidence.rows
+    doubt = (found.share_good < DOUBTFUL) & evidence.counts[rows] & ~evidence.certain[rows]
+    return [
+        _named(int(rows[place]), float(found.miss_s[place]), float(found.miss_K[place]), readings, evidence)
+        for place in np.flatnonzero(doubt)
+    ]
 
 
 def _named(row: int, miss_s: float, miss_K: float, readings: Readings, evidence: Evidence) -> LeftOut:

@@ -3,12 +3,14 @@
 from __future__ import annotations
 
 from collections.abc import Sequence
+from dataclasses import replace
 
 import numpy as np
 
 from core.bench.readings import Readings, Ruling
 from core.bench.setup import Setup
 from core.cooling.fit import CoolingFit
+from core.cooling.follow import Trail, followed
 from core.cooling.gather import FEWEST, check, first_guess, gather, warm_guess
 from core.cooling.model import cooling_model
 from core.cooling.optimiser import NOT_SETTLED
@@ -49,6 +51,10 @@ def fit_cooling(
     NoAnswer : the readings are too few, do not cool, or do not rise above the air.
     """
     check(readings, setup)
+    if warm is not None and start_s is None and not profile and _keeps_start(warm, len(readings)):
+        following = _follow(readings, setup, rulings, warm)
+        if following is not None:
+            return following
     model = cooling_model(setup, readings.time_s[-1])
     prior = prior_of(setup)
     whole = gather(readings, setup, model, 0, rulings)
@@ -71,7 +77,9 @@ def fit_cooling(
             )
         solution = solve(evidence, guess if late is None else late.point, prior, None if late is None else late.tangent)
         _refuse_senseless(solution)
-        fit = outcome(readings, evidence, solution, prior, start_row, by, rulings, profile)
+        share = model.conduction_share(solution.parameters)
+        trail = Trail(readings, setup, tuple(rulings), start_row, evidence, solution, share)
+        fit = outcome(trail, prior, by, profile)
     except np.linalg.LinAlgError as fault:
         raise NoAnswer(NOT_SETTLED) from fault
     if sum(fit.used) < FEWEST:
@@ -80,6 +88,20 @@ def fit_cooling(
             "check the readings, the recording mode and the display's settings."
         )
     return fit
+
+
+def _follow(readings: Readings, setup: Setup, rulings: Sequence[Ruling], warm: CoolingFit) -> CoolingFit | None:
+    """The fit that stood, with the taps that came since; None where it must be made anew."""
+    trail = warm.trail
+    if not isinstance(trail, Trail) or not trail.reaches(readings, setup, rulings):
+        return None
+    evidence = gather(readings, setup, trail.evidence.model, trail.start_row, rulings)
+    solution = followed(trail, evidence)
+    if solution is None:
+        return None
+    return outcome(
+        replace(trail, readings=readings, evidence=evidence, solution=solution), prior_of(setup), "program", False
+    )
 
 
 def _keeps_start(warm: CoolingFit, rows: int) -> bool:

@@ -19,7 +19,8 @@ from core.cooling.observation import Bins, Blur
 Array = NDArray[np.float64]
 
 FINE = 160
-NEWTON_ROUNDS = 2
+NEWTON_ROUNDS = 1  # from the fine grid: crossings within 1e-6 s
+EARLY_NEWTON_ROUNDS = 2  # where early modes bend the curve
 LEAST_RATE = 0.2  # of the mean rate: how steeply the curve goes on before the record at the least
 
 
@@ -40,6 +41,20 @@ class Features:
         """The features for parameter shifts of shape (sets, parameters), shape (kinds, n, sets)."""
         result: Array = self.value[:, :, None] + self.slope @ shift.T
         return result
+
+    def of_taps(self, bins: Bins) -> Features:
+        """The features of other taps on the same curve; `bins` starts with the reading before the first of them."""
+        value, slope, rate_K_s = _taps(self.curve, bins)
+        return replace(self, value=value, slope=slope, rate_K_s=rate_K_s)
+
+    def followed_by(self, more: Features) -> Features:
+        """These features, then those of later taps on the same curve."""
+        return replace(
+            self,
+            value=np.concatenate([self.value, more.value], axis=1),
+            slope=np.concatenate([self.slope, more.slope], axis=1),
+            rate_K_s=np.concatenate([self.rate_K_s, more.rate_K_s]),
+        )
 
     def moved(self, shift: Array) -> Features:
         """The features one shift of shape (parameters,) away, on their straight lines."""
@@ -77,11 +92,15 @@ def change_features(model: CoolingModel, parameters: Array, bins: Bins, record_s
 
     `bins` starts with the reading before the first tap; the features are those of the taps after it."""
     curve = model.curve(_bundle(parameters), record_s)
+    return Features(*_taps(curve, bins), *_start(curve), curve)
+
+
+def _taps(curve: Curve, bins: Bins) -> tuple[Array, Array, Array]:
     edges = np.concatenate([bins.upper_C[1:], bins.left_C[1:], bins.lower_C[1:]])
     time, shown, rate = _crossings(curve, edges)
     slope = -derivatives(shown) / rate[:, None]
     taps = len(bins.time_s) - 1
-    return Features(time.reshape(3, taps), slope.reshape(3, taps, -1), rate[:taps], *_start(curve), curve)
+    return time.reshape(3, taps), slope.reshape(3, taps, -1), rate[:taps]
 
 
 def _start(curve: Curve) -> tuple[float, Array]:
@@ -111,7 +130,7 @@ def _crossings(curve: Curve, edges_C: Array) -> tuple[Array, Array, Array]:
     time = np.where(above, grid[0] + (edges_C - first[0]) / min(float(rates[0]), float(least), -1e-9), time)
     inside = ~(below | above)
     at, rate = curve.with_rate(time)
-    for _ in range(NEWTON_ROUNDS):
+    for _ in range(NEWTON_ROUNDS if curve.early is None else EARLY_NEWTON_ROUNDS):
         step = np.where(inside, (at[:, 0] - edges_C) / np.minimum(rate, -1e-9), 0.0)
         time = time - step
         at, rate = curve.with_rate(time)

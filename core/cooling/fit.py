@@ -2,7 +2,7 @@
 
 from __future__ import annotations
 
-from dataclasses import dataclass
+from dataclasses import dataclass, field
 
 
 @dataclass(frozen=True, slots=True)
@@ -54,10 +54,10 @@ class CoolingFit:
     residual_score: tuple[float | None, ...]  # standardised: ~ N(0, 1) for a sound reading
     curve_time_s: tuple[float, ...]
     curve_C: tuple[float, ...]
-    log_likelihood: float
     iterations: int
     profile_interval_W_m2K: tuple[float, float] | None  # 95 %, where it was computed
     body_mean_C: float  # mean surface temperature over the window
     stem_loss_W_K: float | None = None  # fitted, in a still-air run
     stem_loss_u_W_K: float | None = None
     refresh_found_s: float | None = None  # of the display, where the taps keep its clock
+    trail: object | None = field(default=None, compare=False, repr=False)  # what the fit after the next tap needs

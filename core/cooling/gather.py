@@ -19,6 +19,7 @@ from core.errors import NoAnswer
 Array = NDArray[np.float64]
 
 FEWEST = 4
+AHEAD = 1.25  # length of the curve over that of the record, so that the next taps lie on it too
 CONDUCTION_ROUNDS = 6
 NO_WORD_K = 1e3  # standard deviation of a start temperature of which nothing is known
 
@@ -74,7 +75,7 @@ def gather(
         bins=bins,
         blur=blur,
         mode=setup.recording.mode,
-        record_s=1.02 * span,
+        record_s=AHEAD * span,
         counts=counts,
         certain=certain,
         start_C=float((bins.lower_C[0] + bins.upper_C[0]) / 2.0),

@@ -3,6 +3,7 @@
 from __future__ import annotations
 
 from collections.abc import Callable
+from dataclasses import dataclass
 from math import exp, sqrt
 
 import numpy as np
@@ -25,10 +26,22 @@ PHASE_POINTS = 512
 WORTH = 1e-3  # posterior share below which an explanation is left out
 
 
+@dataclass(frozen=True, slots=True)
+class Joint:
+    """Posterior of the shift of the free parameters and of what the readings tell of the display's clock.
+
+    `renewals` is phase and refresh [s] where they tell them. Where taps keep a `clock`, the posterior's points have
+    two more columns, phase and refresh."""
+
+    posterior: Posterior
+    renewals: tuple[float, float] | None = None
+    clock: Clock | None = None
+
+
 def joint_posterior(
     evidence: Evidence, features: Features, covariance: Array, widen: Widen, log_prior: LogPrior
-) -> tuple[Posterior, tuple[float, float] | None]:
-    """Posterior of the shift of the free parameters; phase and refresh [s] of the clock where one was found.
+) -> Joint:
+    """Posterior of the shift of the free parameters, with the display's clock where one was found.
 
     Parameters
     ----------
@@ -47,16 +60,16 @@ def joint_posterior(
     if clock is not None:
         return _on_clock(evidence, features, covariance, widen, log_prior, clock)
     if evidence.mode != "beat":
-        return adapt(alone, np.zeros(free), covariance, TAP_POINTS), None
+        return Joint(adapt(alone, np.zeros(free), covariance, TAP_POINTS))
     found = adapt(alone, np.zeros(free), covariance, BEAT_POINTS)
     if not wanders(evidence):
-        return found, None
+        return Joint(found)
     return _with_phase(evidence, features, found, widen, log_prior)
 
 
 def _on_clock(
     evidence: Evidence, features: Features, covariance: Array, widen: Widen, log_prior: LogPrior, clock: Clock
-) -> tuple[Posterior, tuple[float, float]]:
+) -> Joint:
     """Taps on a clock, of which phase and refresh are two more parameters."""
     free = len(covariance)
     basis = widen(np.eye(free))
@@ -70,12 +83,10 @@ def _on_clock(
     first[:free, :free], first[free:, free:] = covariance, clock.covariance
     middle = np.concatenate([np.zeros(free), [clock.phase_s, clock.refresh_s]])
     found = adapt(together, middle, first, CLOCK_POINTS)
-    return found.of_first(free), (float(found.mean[free]), float(found.mean[free + 1]))
+    return Joint(found, (float(found.mean[free]), float(found.mean[free + 1])), clock)
 
 
-def _with_phase(
-    evidence: Evidence, features: Features, apart: Posterior, widen: Widen, log_prior: LogPrior
-) -> tuple[Posterior, tuple[float, float] | None]:
+def _with_phase(evidence: Evidence, features: Features, apart: Posterior, widen: Widen, log_prior: LogPrior) -> Joint:
     """Beats with one phase, mixed with beats that each have their own by how well either foretold the readings."""
     free, refresh = len(apart.mean), evidence.blur.refresh_s
     first = np.zeros((free + 1, free + 1))
@@ -98,10 +109,10 @@ def _with_phase(
     found = adapt(with_window(phase), middle, first, PHASE_POINTS)
     share = 1.0 / (1.0 + exp(min(apart.log_evidence - found.log_evidence, 700.0)))
     if share < WORTH:
-        return apart, None
+        return Joint(apart)
     points = np.concatenate([found.points[:, :free], apart.points])
     weights = np.concatenate([share * found.weights, (1.0 - share) * apart.weights])
     mean, covariance, effective = moments(points, weights)
     told = sqrt(found.covariance[free, free]) < 0.5 * refresh / sqrt(12.0) and share > 0.5
     clock = (float(found.mean[free]) % refresh, refresh) if told else None
-    return Posterior(mean, covariance, effective, points, weights, found.log_evidence), clock
+    return Joint(Posterior(mean, covariance, effective, points, weights, found.log_evidence), clock)

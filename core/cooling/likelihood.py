@@ -18,6 +18,8 @@ from core.cooling.observation import (
     beat_probability,
     change_density,
     faulty_density,
+    latest_s,
+    tap_width_s,
 )
 
 Array = NDArray[np.float64]
@@ -76,9 +78,9 @@ def _change_as_normal(evidence: Evidence, features: Features) -> Normal:
     blur, rows = evidence.blur, evidence.rows
     into, out_old, out_new = features.value
     by_new = out_new < out_old + blur.refresh_s
-    high = np.maximum(np.minimum(out_old + blur.refresh_s, out_new), into + 1e-6)
+    high = latest_s(into, out_old, out_new, blur)
     high_slope = np.where(by_new[:, None], features.slope[2], features.slope[1])
-    width = np.sqrt(blur.tap_s**2 + (blur.meter_K / np.abs(features.rate_K_s)) ** 2)
+    width = tap_width_s(features.rate_K_s, blur)
     sd = np.sqrt((high - into) ** 2 / 12.0 + width**2)
     middle, slope = (into + high) / 2.0, (features.slope[0] + high_slope) / 2.0
     if blur.refresh_s == 0.0:
@@ -87,7 +89,7 @@ def _change_as_normal(evidence: Evidence, features: Features) -> Normal:
     miss = time - blur.tap_lag_s - middle
     sd = sd * _widening(miss, sd)
     good = np.exp(-0.5 * (miss / sd) ** 2) / (sd * sqrt(2.0 * np.pi))
-    return Normal(miss, sd, slope, _share(good, faulty_density(time, into, blur), evidence.faulty()))
+    return Normal(miss, sd, slope, share_of(good, faulty_density(time, into, blur), evidence.faulty()))
 
 
 def _beat_as_normal(evidence: Evidence, features: Features) -> Normal:
@@ -100,16 +102,18 @@ def _beat_as_normal(evidence: Evidence, features: Features) -> Normal:
     miss = (lower + upper) / 2.0 - middle
     sd = sd * _widening(miss, sd)
     good = np.exp(-0.5 * (miss / sd) ** 2) / (sd * sqrt(2.0 * np.pi)) * step
-    return Normal(miss, sd, np.mean(features.slope, axis=0), _share(good, 1.0 / STRAY_BINS, evidence.faulty()))
+    return Normal(miss, sd, np.mean(features.slope, axis=0), share_of(good, 1.0 / STRAY_BINS, evidence.faulty()))
 
 
 def _widening(miss: Array, sd: Array) -> float:
     """How much wider the misses lie than their deviations have it; 1 near the solution, large far from it."""
-    return max(1.0, float(np.median(np.abs(miss) / sd)))
+    middle = len(miss) // 2
+    return max(1.0, float(np.partition(np.abs(miss) / sd, middle)[middle]))
 
 
-def _share(good: Array, fault: Array | float, faulty: Array) -> Array:
-    result: Array = (1.0 - faulty) * good / ((1.0 - faulty) * good + faulty * fault)
+def share_of(good: Array, fault: Array | float, faulty: Array) -> Array:
+    """Probability that a reading is a good one, given its density if it is good and if it is a fault."""
+    result: Array = (1.0 - faulty) * good / ((1.0 - faulty) * good + faulty * fault + 1e-300)
     return result
 
 

@@ -102,7 +102,8 @@ class Curve:
         """The same, and the rate [K/s] of the first set, shape (len(time_s),)."""
         x = 2.0 * time_s / self.length_s - 1.0
         inside = np.minimum(np.maximum(x, -1.0), 1.0)
-        return self.on_basis(chebyshev.interpolation(inside), time_s, (x - inside) * self.length_s / 2.0)
+        beyond = None if (x == inside).all() else (x - inside) * self.length_s / 2.0
+        return self.on_basis(chebyshev.interpolation(inside), time_s, beyond)
 
     def on_basis(self, basis: Array, time_s: Array, beyond_s: Array | None = None) -> tuple[Array, Array]:
         """The same where the interpolation matrix for these times is known already."""
@@ -209,9 +210,7 @@ class CoolingModel:
         body = self.body
         middle = air_C + MEAN_EXCESS * (start_C - air_C)
         losses = self.stem_loss_W_K / body.area_m2
-        whole = (
-            h_W_m2K + losses + self._radiation_W(middle, air_C) / (body.area_m2 * np.maximum(middle - air_C, 1e-3))
-        )
+        whole = h_W_m2K + losses + self._radiation_W(middle, air_C) / (body.area_m2 * np.maximum(middle - air_C, 1e-3))
         biot = float(whole[0]) * max(one.half_m for one in self.factors) / body.conductivity_W_mK
         if biot < NO_CONDUCTION:
             return None
@@ -219,6 +218,13 @@ class CoolingModel:
         count = MODES if biot > EARLY_MODES else 1
         ratio = body.area_m2 / body.volume_m3
         return modes_of(self.factors, whole, body.conductivity_W_mK, diffusivity, ratio, count)
+
+    def conduction_share(self, parameters: Array) -> float:
+        """Share of the lumped conductance that conduction inside the body leaves, at parameters of shape (3,)."""
+        if self.natural_W_m2K > 0.0:
+            return 1.0
+        modes = self.modes(np.exp(parameters[:1]), parameters[1:2], np.array([self.air_C + parameters[2]]))
+        return 1.0 if modes is None else float(modes.share[0])
 
     def radiation_W_m2K(self, body_C: float, offset_K: float = 0.0) -> float:
         """Radiation [W/(m²·K)] at a surface temperature [°C], over its excess above the air."""

@@ -35,7 +35,7 @@ def cdf(x: Array) -> Array:
 
     Cubic Hermite interpolation in a table of the exact function with step 1/512; the error bound of that
     interpolation is step⁴/384 times the largest fourth derivative (about 1.4)."""
-    place = (np.clip(x, -_REACH + _STEP, _REACH - _STEP) + _REACH) / _STEP
+    place = (np.minimum(np.maximum(x, -_REACH + _STEP), _REACH - _STEP) + _REACH) / _STEP
     index = place.astype(np.intp)
     s = place - index
     r = 1.0 - s

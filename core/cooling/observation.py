@@ -102,21 +102,33 @@ def change_density(
     time_s: Array, into_s: Array, out_old_s: Array, out_new_s: Array, rate: Array, blur: Blur
 ) -> Array:
     """Density [1/s] of a good tap at `time_s`, given crossings [s] and rate [K/s]; shapes (n,) or (n, sets)."""
-    width = np.sqrt(blur.tap_s**2 + (blur.meter_K / np.maximum(np.abs(rate), 1e-6)) ** 2)
+    width = tap_width_s(rate, blur)
     tap = time_s - blur.tap_lag_s
     if blur.refresh_s == 0.0:
         u = (tap - into_s) / width
         return np.exp(-0.5 * u * u) / (width * sqrt(2.0 * np.pi))
-    high = np.maximum(np.minimum(out_old_s + blur.refresh_s, out_new_s), into_s + 1e-6)
+    high = latest_s(into_s, out_old_s, out_new_s, blur)
     raw = cdf((tap - into_s) / width) - cdf((tap - high) / width)
     result: Array = np.maximum(raw, 0.0) / blur.refresh_s
     return result
 
 
+def tap_width_s(rate_K_s: Array, blur: Blur) -> Array:
+    """Scatter of a tap about its renewal [s]: the hand's, and the meter's noise over the rate of cooling."""
+    if blur.meter_K == 0.0:
+        return np.full_like(rate_K_s, blur.tap_s)
+    return np.asarray(np.sqrt(blur.tap_s**2 + (blur.meter_K / np.maximum(np.abs(rate_K_s), 1e-6)) ** 2))
+
+
+def latest_s(into_s: Array, out_old_s: Array, out_new_s: Array, blur: Blur) -> Array:
+    """The latest moment [s] at which the renewal that brings a number can come."""
+    return np.asarray(np.maximum(np.minimum(out_old_s + blur.refresh_s, out_new_s), into_s + 1e-6))
+
+
 def faulty_density(time_s: Array, into_s: Array, blur: Blur) -> Array:
     """Density [1/s] of a tap that is a person's fault: late by a few seconds, or anything."""
     behind = time_s - blur.tap_lag_s - into_s
-    late = np.where(behind > 0.0, np.exp(-np.clip(behind, 0.0, 1e3) / LATE_s) / LATE_s, 0.0)
+    late = np.where(behind > 0.0, np.exp(-np.maximum(behind, 0.0) / LATE_s) / LATE_s, 0.0)
     return 0.8 * late + 0.2 / STRAY_s
 
 

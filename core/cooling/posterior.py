@@ -8,7 +8,7 @@ et al., J. Comput. Graph. Stat. 13 (2004) 907–929)."""
 from __future__ import annotations
 
 from collections.abc import Callable
-from dataclasses import dataclass, replace
+from dataclasses import dataclass
 from functools import cache
 from math import log, pi
 
@@ -37,15 +37,6 @@ class Posterior:
     points: Array
     weights: Array
     log_evidence: float
-
-    def of_first(self, count: int) -> Posterior:
-        """The marginal posterior of the first parameters."""
-        return replace(
-            self,
-            mean=self.mean[:count],
-            covariance=self.covariance[:count, :count],
-            points=self.points[:, :count],
-        )
 
 
 @cache

@@ -7,6 +7,7 @@ from dataclasses import dataclass
 import numpy as np
 from numpy.typing import NDArray
 
+from core.cooling.clock import Clock
 from core.cooling.features import Features, derivatives
 from core.cooling.joint import joint_posterior
 from core.cooling.likelihood import Evidence, Normal, as_normal
@@ -40,7 +41,10 @@ class Tangent:
 
 @dataclass(frozen=True, slots=True)
 class Solution:
-    """Parameters of the model with covariance, and the weighted points behind them."""
+    """Parameters of the model with covariance, and the weighted points behind them.
+
+    `renewals` is phase and refresh of the display [s] where the readings tell them; where taps keep a `clock`,
+    `clock_points` holds the phase and refresh of each point, shape (sets, 2)."""
 
     parameters: Array
     covariance: Array
@@ -49,7 +53,9 @@ class Solution:
     effective: float
     rounds: int
     tangent: Tangent
-    clock: tuple[float, float] | None  # phase and refresh of the display [s], where the taps tell them
+    renewals: tuple[float, float] | None
+    clock: Clock | None
+    clock_points: Array
 
 
 @dataclass(frozen=True, slots=True)
@@ -136,16 +142,19 @@ def solve(evidence: Evidence, guess: Array, prior: Prior, tangent: Tangent | Non
         logs: Array = -0.5 * (point + whole) ** 2 @ prior.weight
         return logs
 
-    posterior, clock = joint_posterior(evidence, features, covariance, widened, log_prior)
+    joint = joint_posterior(evidence, features, covariance, widened, log_prior)
+    posterior, count = joint.posterior, len(free)
     whole = np.zeros((3, 3))
-    whole[np.ix_(free, free)] = posterior.covariance
+    whole[np.ix_(free, free)] = posterior.covariance[:count, :count]
     return Solution(
-        parameters=point + widened(posterior.mean[None, :])[0],
+        parameters=point + widened(posterior.mean[None, :count])[0],
         covariance=whole,
-        points=point + widened(posterior.points),
+        points=point + widened(posterior.points[:, :count]),
         weights=posterior.weights,
         effective=posterior.effective,
         rounds=found.rounds,
         tangent=found.tangent,
-        clock=clock,
+        renewals=joint.renewals,
+        clock=joint.clock,
+        clock_points=posterior.points[:, count:],
     )

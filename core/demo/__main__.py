@@ -2,9 +2,11 @@
 
 from __future__ import annotations
 
-import sys
+import argparse
 from pathlib import Path
 
 from core.demo.cabinet_bench import FOLDER, write_demo
 
-write_demo(Path(sys.argv[1]) if len(sys.argv) > 1 else FOLDER)
+parser = argparse.ArgumentParser("python -m core.demo", description="Make the invented demo session anew.")
+parser.add_argument("folder", nargs="?", type=Path, default=FOLDER, help="where to; the tree's own if left out")
+write_demo(parser.parse_args().folder)

@@ -58,7 +58,6 @@ def fit_of(readings):
         residual_score=(None, *([0.2] * (n - 2)), None),
         curve_time_s=(0.0, 5.0),
         curve_C=(90.0, 87.0),
-        log_likelihood=-3.0,
         iterations=5,
         profile_interval_W_m2K=None,
         body_mean_C=88.0,

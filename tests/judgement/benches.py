@@ -38,7 +38,7 @@ def invented_fit(setup: Setup, h_W_m2K: float = 80.0, **changes) -> CoolingFit:
         h_per_measured_air_W_m2K2=0.027 * h_W_m2K, h_per_lag_W_m2Ks=0.0, phase_s=None,
         covariance=(), parameters=("rate", "start", "asymptote"), model="lumped", biot=0.005,
         window_s=(0.0, 300.0), start_by="program", used=(True,) * n, left_out=(), residual_s=(None,) * n,
-        residual_K=(None,) * n, residual_score=(None,) * n, curve_time_s=(), curve_C=(), log_likelihood=0.0,
+        residual_K=(None,) * n, residual_score=(None,) * n, curve_time_s=(), curve_C=(),
         iterations=5, profile_interval_W_m2K=None, body_mean_C=body_C,
     )  # fmt: skip
     return replace(fit, **changes)
