@@ -34,7 +34,7 @@ class Truth:
     run, h follows with the power `exponent`. In a still-air run it is that of natural convection at the start, and
     goes with θ^(1/4), unless `natural_W_m2K` gives it for body and air [°C]. The fan runs up with the time constant
     `fan_run_up_s` after `fan_late_s`. `thermometer_offset_K` is how much the body's thermometer reads above the
-    air's."""
+    air's. The display's renewals come `unsteady_s` (standard deviation) off their time."""
 
     setup: Setup
     h_W_m2K: float
@@ -46,6 +46,7 @@ class Truth:
     fan_late_s: float = 0.0
     thermometer_offset_K: float = 0.0
     natural_W_m2K: Callable[[float, float], float] | None = None
+    unsteady_s: float = 0.0
 
 
 @dataclass(frozen=True, slots=True)
@@ -179,6 +180,17 @@ class Display:
     rounding: str
     noise_K: float = 0.0
     seed: int = 0
+    unsteady_s: float = 0.0
+
+    def renewal_s(self, count: Array) -> Array:
+        """When renewals come [s], by their count from `phase_s` on; unsteady ones by a lot that the seed holds."""
+        time = self.phase_s + count * self.refresh_s
+        if self.unsteady_s == 0.0:
+            return time
+        lot = np.random.default_rng((self.seed, 3)).normal(size=int(self.course.length_s / self.refresh_s) + 4)
+        off = self.unsteady_s * lot[np.clip(count.astype(np.intp) + 1, 0, len(lot) - 1)]
+        result: Array = time + np.clip(off, -self.refresh_s / 3.0, self.refresh_s / 3.0)
+        return result
 
     def shown(self, time_s: float) -> float:
         """The number on the display at a moment [s from the start of the cooling]."""
@@ -190,7 +202,8 @@ class Display:
             renewal, count = time_s, np.zeros(len(time_s))
         else:
             count = np.floor((time_s - self.phase_s) / self.refresh_s)
-            renewal = count * self.refresh_s + self.phase_s
+            count = count + (self.renewal_s(count + 1.0) <= time_s) - (self.renewal_s(count) > time_s)
+            renewal = self.renewal_s(count)
         value = self.course.at(renewal)
         if self.noise_K > 0.0:
             value = value + self.noise_K * np.array(
@@ -204,7 +217,10 @@ class Display:
         """Every moment [s] at which the number becomes another one, and that number; the first is at 0."""
         pace = self.refresh_s if self.refresh_s > 0.0 else 0.01
         first = self.phase_s if self.refresh_s > 0.0 else 0.0
-        times = np.concatenate([[0.0], np.arange(first, self.course.length_s, pace)])
+        renewals = np.arange(first, self.course.length_s, pace)
+        if self.unsteady_s > 0.0:
+            renewals = self.renewal_s(np.arange(float(len(renewals))))
+        times = np.concatenate([[0.0], renewals])
         times = times[np.concatenate([[True], np.diff(times) > 0.0])]
         numbers = self.shown_at(times + 1e-9)
         keep = np.concatenate([[True], np.diff(numbers) != 0.0])
@@ -231,7 +247,16 @@ def display_of(truth: Truth, seed: int) -> Display:
     """The display of a bench with a phase drawn by lot."""
     meter = truth.setup.thermometer
     phase = float(np.random.default_rng(seed).uniform(0.0, max(meter.refresh_s, 1e-12)))
-    return Display(cool(truth), meter.resolution_K, meter.refresh_s, phase, meter.rounding, meter.noise_K, seed)
+    return Display(
+        cool(truth),
+        meter.resolution_K,
+        meter.refresh_s,
+        phase,
+        meter.rounding,
+        meter.noise_K,
+        seed,
+        truth.unsteady_s,
+    )
 
 
 def record(display: Display, hand: Hand, truth: Truth, seed: int) -> Readings:

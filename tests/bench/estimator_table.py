@@ -4,7 +4,9 @@
 
 prints a row a scenario, 400 runs each on two processes if left out; then late taps, times and memory. NAME picks the
 scenarios that contain it, and leaves out the rest. CRB is the bound for taps taken one by one: the fit goes below it
-where it hears the display's clock, which the bound does not know of."""
+where it hears the display's clock, which the bound does not know of. It stays above it where 60 wide intervals are too
+few to reach what the bound promises in the limit of many; /u is then the measure, the error beside the spread of the
+posterior, which no estimator undercuts in the mean over such runs."""
 
 import sys
 from multiprocessing import Pool
@@ -44,7 +46,7 @@ def rms(values):
 
 def main(runs, wanted=""):
     places = [k for k, one in enumerate(SCENARIOS) if wanted in one.name]
-    print(f"{'scenario':32}{'n':>5}{'bias %':>8}{'RMSE %':>8}{'/CRB':>6}{'cover %':>8}"
+    print(f"{'scenario':32}{'n':>5}{'bias %':>8}{'RMSE %':>8}{'/CRB':>6}{'/u':>6}{'cover %':>8}"
           f"{'line %':>8}{'curve_fit':>10}{'lmfit':>8}{'best/':>7}{'start':>6}{'named':>7}")  # fmt: skip
     with Pool(2) as pool:
         for place in places:
@@ -54,7 +56,8 @@ def main(runs, wanted=""):
             error, stated = 100 * table[:, 0], 100 * table[:, 1]
             rivals = [100 * rms(table[:, 2 + k]) for k in range(len(RIVALS))]
             print(f"{SCENARIOS[place].name:32}{table[:, -1].mean():5.0f}{error.mean():8.3f}{rms(error):8.4f}"
-                  f"{rms(error) / bound:6.2f}{100 * np.mean(np.abs(error) < 1.96 * stated):8.1f}"
+                  f"{rms(error) / bound:6.2f}{rms(error) / rms(stated):6.2f}"
+                  f"{100 * np.mean(np.abs(error) < 1.96 * stated):8.1f}"
                   f"{rivals[0]:8.3f}{rivals[1]:10.3f}{rivals[2]:8.3f}{min(rivals) / rms(error):7.1f}"
                   f"{np.mean(table[:, -3] > 0):6.3f}{table[:, -2].sum() / table[:, -1].sum():7.4f}",
                   flush=True)  # fmt: skip

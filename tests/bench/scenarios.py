@@ -6,6 +6,7 @@ import numpy as np
 
 from core.bench.readings import Readings
 from core.bench.setup import Body, Flow, Recording, Setup, Surrounding, Thermometer
+from core.cooling.clock import EDGE_REL, EDGE_s
 from core.cooling.simulator import Hand, Truth, planned_s, simulate
 
 AIR_C = 23.0
@@ -21,7 +22,8 @@ BALL = Body("sphere", diameter_m=0.04, density_kg_m3=1400.0, heat_capacity_J_kgK
 
 @dataclass(frozen=True)
 class Scenario:
-    """A bench with its true coefficient; every run starts at another temperature, display phase and air error."""
+    """A bench with its true coefficient; every run starts at another temperature, display phase and air error, and
+    the display renews itself as unsteadily as the fit takes it to."""
 
     name: str
     setup: Setup
@@ -33,7 +35,10 @@ class Scenario:
         start = 90.0 + self.setup.thermometer.resolution_K * rng.uniform(-0.5, 0.5)
         offset = self.setup.air.temperature_u_K * rng.normal()
         end = END_C - max(3.0 * self.setup.thermometer.resolution_K, 1.0)
-        return Truth(self.setup, self.h_W_m2K, start + offset, end, thermometer_offset_K=-offset)
+        unsteady_s = np.hypot(EDGE_s, EDGE_REL * self.setup.thermometer.refresh_s)
+        return Truth(
+            self.setup, self.h_W_m2K, start + offset, end, thermometer_offset_K=-offset, unsteady_s=float(unsteady_s)
+        )
 
     def run(self, seed: int, hand: Hand | None = None) -> Readings:
         """One run's readings: the person stops at the first number that is no higher than the end."""

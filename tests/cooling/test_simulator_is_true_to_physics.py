@@ -131,6 +131,19 @@ def test_between_two_changes_the_number_stands():
         assert set(display.shown_at(np.linspace(from_s + 1e-6, to_s - 1e-6, 7))) == {number}
 
 
+@pytest.mark.parametrize("unsteady_s", [0.0, 0.02, 0.1])
+def test_an_unsteady_display_renews_itself_off_its_beat_by_that_much(unsteady_s):
+    """Moments at which a fine display changes lie about the beat, and it stands still between them."""
+    fine = replace(BENCH, thermometer=Thermometer(0.01, refresh_s=1.0))
+    display = display_of(Truth(fine, 60.0, unsteady_s=unsteady_s), seed=3)
+    times, numbers = display.changes()
+    off = (times[1:] - display.phase_s + 0.5) % 1.0 - 0.5
+    assert len(off) > 150
+    assert np.std(off) == pytest.approx(unsteady_s, rel=0.15, abs=1e-9)
+    for (from_s, to_s), number in zip(pairwise(times), numbers[:-1], strict=True):
+        assert set(display.shown_at(np.linspace(from_s + 1e-6, to_s - 1e-6, 5))) == {number}
+
+
 def test_the_same_seed_gives_the_same_run_and_another_seed_another():
     truth = Truth(BENCH, 60.0)
     assert simulate(truth, 4) == simulate(truth, 4) != simulate(truth, 5)
