@@ -20,9 +20,9 @@ MEAN_DELAY_S, SCATTER_S = 0.09, 0.03
 LAST_C = 42
 
 
-def rehearse(app: AppInWindow, seed: int) -> list[float]:
-    """Start a rehearsal and tap at each change of the display, with a hand's own delay; where the display jumps by
-    two or three, the key for as many steps is used. Returns when each was sent."""
+def rehearse(app: AppInWindow, seed: int, last_C: int = LAST_C) -> list[float]:
+    """Start a rehearsal and tap at each change of the display down to `last_C`, with a hand's own delay; where the
+    display jumps by two or three, the key for as many steps is used. Returns when each was sent."""
     hand = random.Random(seed)
     app.go("Rehearse", "rehearsal")
     app.go("To the pad", "record")
@@ -33,7 +33,7 @@ def rehearse(app: AppInWindow, seed: int) -> list[float]:
         app.press("−1")
     app.point(app.target("", "Pad"))
     sent: list[float] = []
-    while shown > LAST_C:
+    while shown > last_C:
         event = app.wait_for("display", lambda one: bool(one["text"]))
         steps = shown - int(event["text"])
         delay_s = max(0.02, hand.gauss(MEAN_DELAY_S, SCATTER_S))
