@@ -15,6 +15,7 @@ from mobileapp.widgets.run_row import RunListHead, RunRow, rows_for
 from mobileapp.words import _
 
 SHOWN_EVERY_S = 0.15
+NEWEST = 10  # runs that are listed until somebody wants the earlier ones too
 
 
 class HomeScreen(Page):
@@ -26,6 +27,7 @@ class HomeScreen(Page):
     has_bench = BooleanProperty(False)
     has_runs = BooleanProperty(False)
     invented = BooleanProperty(False)
+    all_runs = BooleanProperty(False)
     notice = StringProperty("")
 
     def __init__(self, **options: Any) -> None:
@@ -38,6 +40,7 @@ class HomeScreen(Page):
         self._tell()
 
     def leave(self) -> None:
+        self.all_runs = False
         self.model.unbind(session=self._later, sessions=self._later, next_speed=self._later, notice=self._tell)
         self.model.notice = ""
 
@@ -63,7 +66,11 @@ class HomeScreen(Page):
 
     def _list_runs(self, session: Any) -> None:
         box = self.ids.runs
-        rows = rows_for(list(reversed(session.runs))) if self.has_runs else []
+        runs = list(reversed(session.runs)) if self.has_runs else []
+        earlier = 0 if self.all_runs else max(0, len(runs) - NEWEST)
+        self.ids.earlier.text = _("Earlier runs: {count}").format(count=earlier)
+        self.ids.more.shown = earlier > 0
+        rows = rows_for(runs[: len(runs) - earlier])
         shown = [child for child in reversed(box.children) if isinstance(child, RunRow)]
         if rows and [row.run for row in rows] == [row.run for row in shown]:
             for old, fresh in zip(shown, rows, strict=True):
@@ -90,6 +97,11 @@ class HomeScreen(Page):
             button = PlainPress(text=f"{session.title}\n[size={small}]{mark}{session.started[:10]}[/size]")
             button.bind(on_release=lambda _button, key=session.session: self.model.open_session(key))
             box.add_widget(button)
+
+    def show_all(self) -> None:
+        """List the earlier runs too."""
+        self.all_runs = True
+        self._show()
 
     def open_run(self, run: str) -> None:
         self.go("answer", run=run)
