@@ -32,6 +32,7 @@ FAINT = 1e-7
 ODD = 0.05  # share of taps that may lie anywhere
 EDGE_s = 2e-3  # how far from steady a renewal may come
 EDGE_REL = 0.003  # the same, of a refresh
+NEVER_s = 1e6
 REACH = 6.0  # deviations from the edges of its interval at which a renewal is beyond doubt inside
 QUIET = 3.0  # scatters of the hand within which a tap is beyond doubt good
 DOUBT = 2.5  # standard deviations by which scatter must exceed the set-up's before it counts
@@ -192,6 +193,13 @@ class Heard:
         return result
 
 
+def _said_before(count: Array, sound: NDArray[np.bool_]) -> NDArray[np.bool_]:
+    """Taps of which the tap before followed the very renewal before: that the old number still stood then, that tap
+    has said already. Said twice, an edge that is not quite sharp would count for more than it knows."""
+    before: NDArray[np.bool_] = (np.diff(count, prepend=count[:1]) == 1.0) & np.concatenate([[False], sound[:-1]])
+    return before
+
+
 def heard(evidence: Evidence, features: Features, clock: Clock, covariance: Array) -> Heard:
     """The taps that count on a clock, around a point of linearisation; `covariance` of the parameters, (3, 3)."""
     blur, rows = evidence.blur, evidence.rows
@@ -201,13 +209,15 @@ def heard(evidence: Evidence, features: Features, clock: Clock, covariance: Arra
     nearest = np.round((time - clock.phase_s) / clock.refresh_s)
     renewal = clock.phase_s + nearest * clock.refresh_s
     miss = time - renewal
+    counts = evidence.counts[rows]
+    said = _said_before(nearest, counts & (np.abs(miss) < QUIET * clock.hand_s))
+    features = replace(features, value=features.value + np.stack([0.0 * said, NEVER_s * said, 0.0 * said]))
     inner = np.minimum(features.value[1] + clock.refresh_s, features.value[2])
     margin = np.minimum(renewal - features.value[0], inner - renewal)
     spread = np.max(np.sum((features.slope @ covariance) * features.slope, axis=2), axis=0)
     own = clock.covariance
     spread = np.sqrt(spread + own[0, 0] + nearest**2 * own[1, 1] + 2.0 * nearest * own[0, 1])
     faulty = evidence.faulty()
-    counts = evidence.counts[rows]
     alone = np.bincount(clock.tap, minlength=len(time)) == 1
     quiet = counts & alone & (margin > REACH * spread + 3.0 * edge) & (np.abs(miss) < QUIET * clock.hand_s)
     listened = counts & ~quiet
