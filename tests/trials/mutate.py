@@ -3,10 +3,10 @@
     python -m tests.trials.mutate PACKAGE [COUNT] [SEED]
 
 takes COUNT mutants of core/PACKAGE (60 if left out) by lot out of all that cosmic-ray knows to make (operators,
-comparisons, numbers, not, and, or, loops), puts each into a copy of the project, and runs tests/PACKAGE there until
-the first failure. It prints each survivor as a difference, and the score. Mutants that change nothing but
-annotations, docstrings or decorators are not drawn. Needs cosmic-ray, which no environment of the project holds:
-`pip install cosmic-ray`, or put it on PYTHONPATH."""
+comparisons, numbers, not, and, or, loops), puts each into a copy of the project, and runs tests/PACKAGE and
+tests/outside there until the first failure. It prints each survivor as a difference, and the score. Mutants that
+change nothing but annotations, docstrings or decorators are not drawn. Needs cosmic-ray, which no environment of the
+project holds: `pip install cosmic-ray`, or put it on PYTHONPATH."""
 
 import ast
 import difflib
@@ -76,8 +76,8 @@ def mutants_of(path):
 
 
 def survives(tree, package):
-    """Whether all tests of the package pass in the tree."""
-    words = [sys.executable, "-m", "pytest", "-x", "-q", "-p", "no:cacheprovider", f"tests/{package}"]
+    """Whether all tests of the package, then those against the outside world, pass in the tree."""
+    words = [sys.executable, "-m", "pytest", "-x", "-q", "-p", "no:cacheprovider", f"tests/{package}", "tests/outside"]
     environment = os.environ | {"PYTHONDONTWRITEBYTECODE": "1", "HYPOTHESIS_STORAGE_DIRECTORY": str(tree / "found")}
     try:
         done = subprocess.run(words, cwd=tree, env=environment, capture_output=True, timeout=LONGEST_S, check=False)
