@@ -1,7 +1,8 @@
 """Where a session can be written so that a laptop finds it: the public download folder, cards, sticks.
 
-On Android 11 and later an app may write its own files below Download without a permission; a card offers the app's
-own folder, which is removed with the app. Sticks are mounted by the system where a desktop runs the app."""
+On Android the download folder is reached through the system's store first, and Android 11 and later also let an app
+write its own files there by their path; the device and each card offer a folder of the app's own, which is removed with
+the app. Sticks are mounted by the system where a desktop runs the app."""
 
 from __future__ import annotations
 
@@ -27,8 +28,9 @@ class Place:
 def find_places(on_android: bool, home: Path | None = None) -> tuple[Place, ...]:
     """The places that this device offers now, the one that a laptop sees most easily first."""
     if on_android:
-        cards = (Place(_("Card {number}").format(number=i), path) for i, path in enumerate(_card_folders(), 1))
-        return (Place(_("Downloads"), ANDROID_DOWNLOADS / FOLDER), *cards)
+        cards = [path for path in _own_folders()[1:] if path]
+        named = (Place(_("Card {number}").format(number=i), path) for i, path in enumerate(cards, 1))
+        return (Place(_("Downloads"), ANDROID_DOWNLOADS / FOLDER), *named)
     home = home or Path.home()
     downloads = home / "Downloads"
     first = Place(_("Downloads"), downloads / FOLDER) if downloads.is_dir() else Place(_("Home"), home / FOLDER)
@@ -47,10 +49,15 @@ def _mounted() -> list[Path]:
     return list(dict.fromkeys(found))
 
 
-def _card_folders() -> list[Path]:
-    """The app's own folders on removable cards (Context.getExternalFilesDirs, its first is the device itself)."""
+def own_folder() -> Path | None:
+    """The app's own folder on the Android device itself, where a laptop may look; None where there is none now."""
+    return next(iter(_own_folders()), None)
+
+
+def _own_folders() -> list[Path | None]:
+    """The app's own folders (Context.getExternalFilesDirs): the device's first, then one a card, None where absent."""
     try:
         folders = activity().getExternalFilesDirs(None)
-    except Exception:  # a device without the call offers no card; the rest of the list stands
+    except Exception:  # a device without the call offers none; the rest of the list stands
         return []
-    return [Path(folder.getAbsolutePath()) for folder in folders[1:] if folder is not None]
+    return [Path(folder.getAbsolutePath()) if folder is not None else None for folder in folders]

@@ -12,10 +12,9 @@ from kivy.properties import BooleanProperty, StringProperty
 from core.errors import BenchError
 from core.handover.archive import zipped
 from core.handover.share_page import PageTexts
-from core.handover.sync import Synced, sync_session
-from mobileapp.device.android_downloads import save_to_downloads
+from core.handover.sync import Synced
 from mobileapp.device.find import on_android
-from mobileapp.device.places import ANDROID_DOWNLOADS, find_places
+from mobileapp.device.places import find_places
 from mobileapp.figures import clock_time
 from mobileapp.gathering import with_answers
 from mobileapp.navigation import Page
@@ -23,6 +22,7 @@ from mobileapp.trace import trace
 from mobileapp.widgets import basics, folder_list  # noqa: F401  the .kv of this screen uses them
 from mobileapp.widgets.basics import ChoicePress
 from mobileapp.words import _, language, say
+from mobileapp.writing import write_session
 
 
 class HandoverScreen(Page):
@@ -115,17 +115,8 @@ class HandoverScreen(Page):
         self.busy = True
         self.written_text = self.fault_text = ""
 
-        def work() -> Any:
-            try:
-                return sync_session(session, place)
-            except BenchError:
-                if not (on_android() and place.is_relative_to(ANDROID_DOWNLOADS)):
-                    raise
-                name, data = zipped(session)
-                try:
-                    return save_to_downloads(name, data)
-                except Exception as refusal:
-                    raise BenchError(f"The download folder cannot be written: {refusal}.") from refusal
+        def work() -> Synced | str:
+            return write_session(session, place, on_android())
 
         self.model.ask("hand over", work, self._written, self._not_written)
 

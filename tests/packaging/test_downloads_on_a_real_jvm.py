@@ -6,6 +6,7 @@ import os
 import shutil
 import subprocess
 import sys
+import zipfile
 from importlib.metadata import version
 from pathlib import Path
 
@@ -26,15 +27,16 @@ def classes(tmp_path_factory):
 
 @pytest.fixture
 def save(classes, tmp_path):
-    def on_jvm(fails_at=""):
-        script = Path(__file__).parent / "store_on_jvm.py"
-        words = [sys.executable, str(script), str(classes), str(tmp_path), fails_at]
-        path = {**os.environ, "PYTHONPATH": str(ROOT)}
-        done = subprocess.run(words, cwd=ROOT, env=path, check=False, capture_output=True, text=True)
-        assert done.returncode == 0, done.stderr
-        return json.loads(done.stdout.splitlines()[-1])
+    return lambda fails_at="": on_jvm("store_on_jvm.py", classes, tmp_path, fails_at)
 
-    return on_jvm
+
+def on_jvm(script, *words):
+    """What a script beside this file says of itself in its last line."""
+    command = [sys.executable, Path(__file__).parent / script, *words]
+    path = {**os.environ, "PYTHONPATH": str(ROOT)}
+    done = subprocess.run(list(map(str, command)), cwd=ROOT, env=path, check=False, capture_output=True, text=True)
+    assert done.returncode == 0, done.stderr
+    return json.loads(done.stdout.splitlines()[-1])
 
 
 def test_pyjnius_is_the_one_that_the_apk_gets():
@@ -78,3 +80,54 @@ def test_a_store_that_takes_nothing_is_an_os_error(save):
     done = save("insert")
     assert done["raised"].startswith("OSError")
     assert done["log"] == ["insert"]
+
+
+@pytest.fixture
+def hand_over(classes, tmp_path):
+    """Hand the demo session over; which of the three ways are open is for the caller to say."""
+
+    def handed(fails_at="", *, folder=True, own=True):
+        (tmp_path / "store").mkdir()
+        downloads = tmp_path / "Download"
+        downloads.mkdir() if folder else downloads.write_text("a file stands in the way")
+        place = tmp_path / "own" if own else ""
+        return on_jvm("hand_over_on_jvm.py", classes, tmp_path / "store", fails_at, downloads, place)
+
+    return handed
+
+
+def written(folder):
+    return {path.name for path in folder.rglob("*") if path.is_file()}
+
+
+def test_the_store_goes_first_and_nothing_else_is_written(hand_over, tmp_path):
+    done = hand_over()
+    assert done["raised"] == ""
+    assert done["told"].startswith("Download/Cooltally/")
+    assert done["told"].endswith(" (1).zip")  # the final name is the store's
+    assert zipfile.is_zipfile(tmp_path / "store" / "entry.bin")
+    assert written(tmp_path / "Download") | written(tmp_path / "own") == set()
+
+
+@pytest.mark.parametrize("fails_at", ["insert", "write", "update"])
+def test_the_folder_by_its_path_comes_second(hand_over, tmp_path, fails_at):
+    done = hand_over(fails_at)
+    assert done["raised"] == ""
+    assert done["log"][0] == "insert"
+    assert not (tmp_path / "store" / "entry.bin").exists()
+    assert written(tmp_path / "Download") >= {"runs.csv", "readings.csv", "SHA256SUMS"}
+    assert written(tmp_path / "own") == set()
+
+
+def test_the_folder_of_the_app_comes_last_with_its_whole_path(hand_over, tmp_path):
+    done = hand_over("open", folder=False)
+    assert done["log"][-1] == "delete"
+    assert zipfile.is_zipfile(done["told"])
+    assert Path(done["told"]).parent == tmp_path / "own"
+
+
+def test_where_no_way_is_open_the_reason_of_the_store_is_said(hand_over):
+    done = hand_over("open", folder=False, own=False)
+    assert done["told"] == ""
+    assert done["raised"].startswith("BenchError: The download folder cannot be written: ")
+    assert "no space left" in done["raised"]

@@ -8,4 +8,9 @@ public class PythonActivity {
     public ContentResolver getContentResolver() {
         return new ContentResolver();
     }
+
+    public java.io.File[] getExternalFilesDirs(String kind) {
+        String own = System.getProperty("own");
+        return new java.io.File[] {own == null ? null : new java.io.File(own), null};
+    }
 }
