@@ -1,6 +1,6 @@
 """What the packaging tools would make of this project, by their own code and short of the compiler.
 
-python buildspec/android_staging.py OUT [--profile full|lean]   packs the app's files into OUT and lists them
+python buildspec/android_staging.py OUT [--profile lean|full]   packs the app's files into OUT and lists them
 
 Needs the packages of buildspec/locks/test.txt; neither SDK nor NDK, and no network."""
 
@@ -19,19 +19,19 @@ from pathlib import Path
 from typing import Any
 
 SPEC_FOLDER = Path(__file__).resolve().parent
-PROFILES = ("full", "lean")
+PROFILES = ("lean", "full")
 LARGE_BYTES = 100_000
 
 
 def spec_text(profile: str) -> str:
-    """The build spec of a profile; the lean one is the full one without SciPy."""
+    """The build spec of a profile; the full one is the lean one with SciPy, which nothing needs today."""
     text = (SPEC_FOLDER / "buildozer.spec").read_text("utf-8")
-    if profile == "full":
+    if profile == "lean":
         return text
-    lean, found = re.subn(r"^(requirements\s*=.*?),\s*scipy\b", r"\1", text, flags=re.MULTILINE)
+    full, found = re.subn(r"^(requirements\s*=.*?,\s*numpy)\b", r"\1,scipy", text, flags=re.MULTILINE)
     if found != 1:
-        raise ValueError("buildozer.spec: no SciPy to take out of its line 'requirements'.")
-    return lean
+        raise ValueError("buildozer.spec: no NumPy in its line 'requirements' beside which SciPy could stand.")
+    return full
 
 
 @contextlib.contextmanager
@@ -162,7 +162,7 @@ def main() -> int:
     """Pack, list, and name what is large."""
     parser = argparse.ArgumentParser(prog="dev.py stage", description="The files that would be packed.")
     parser.add_argument("out", type=Path, help="folder for the packed tree; replaced")
-    parser.add_argument("--profile", choices=PROFILES, default="full")
+    parser.add_argument("--profile", choices=PROFILES, default="lean")
     chosen = parser.parse_args()
     with tempfile.TemporaryDirectory() as work, contextlib.redirect_stdout(sys.stderr):
         tool, folder = stage(chosen.profile, Path(work))

@@ -1,9 +1,10 @@
-"""What a start costs beside a bare window of the same library, in the same run; full, and lean without SciPy.
+"""What a start costs beside a bare window of the same library, in the same run.
 
 python3 buildspec/dev.py bench [ROUNDS]     needs a screen or Xvfb"""
 
 from __future__ import annotations
 
+import argparse
 import json
 import os
 import statistics
@@ -32,9 +33,9 @@ Bare().run()
 """
 APP = "import sys; from mobileapp.__main__ import main; main(['--data', sys.argv[1]])"
 DEMO = APP.replace("[1]]", "[1], '--demo']")
-LEAN = "import sys; sys.modules['scipy'] = None\n" + APP
-KINDS = {"bare window": BARE, "app, full": APP, "app, lean": LEAN, "app with the demo": DEMO}
+KINDS = {"bare window": BARE, "app": APP, "app with the demo": DEMO}
 SETTLE_S = 3.0
+MOST_ROUNDS = 1000
 
 
 def _resident_mb(process: int) -> float:
@@ -88,9 +89,17 @@ def _ready(trace: Path, process: subprocess.Popen, log: Path) -> float:
     raise SystemExit(f"The window did not open: {log.read_text()[-400:]}")
 
 
+def _count(word: str) -> int:
+    if not (word.isascii() and word.isdigit() and 1 <= int(word) <= MOST_ROUNDS):
+        raise argparse.ArgumentTypeError(f"'{word}' is no whole number from 1 to {MOST_ROUNDS}; give e.g. 5")
+    return int(word)
+
+
 def main() -> int:
     """The table: medians over the rounds, each kind once a round."""
-    rounds = int(sys.argv[1]) if len(sys.argv) > 1 else 5
+    parser = argparse.ArgumentParser(prog="dev.py bench", description="What a start costs beside a bare window.")
+    parser.add_argument("rounds", nargs="?", type=_count, default=5, help="starts of each kind")
+    rounds = parser.parse_args().rounds
     sys.path.insert(0, str(ROOT / "tests" / "screen"))
     from window import virtual_screen
 

@@ -2,8 +2,6 @@
 
 from __future__ import annotations
 
-import threading
-from importlib import import_module
 from pathlib import Path
 from typing import Any
 
@@ -80,7 +78,6 @@ class CooltallyApp(App):
         if trace.on:
             Clock.schedule_interval(lambda _dt: trace.targets(self.navigator, Window.height), TARGETS_EVERY_S)
         Clock.schedule_once(lambda _: trace("ready", stamps=self.model.device.stamps.name), 0)
-        Clock.schedule_once(lambda _: threading.Thread(target=_preload, daemon=True).start(), 0.5)
 
     def _stamp_touch(self, _window: Any, touch: Any) -> bool:
         """Every touch gets its stamp as it is dispatched, whatever it lands on: none is taken for another."""
@@ -120,12 +117,3 @@ class CooltallyApp(App):
 
     def on_stop(self) -> None:
         self.model.close()
-
-
-def _preload() -> None:
-    """Load in the background what only later screens need."""
-    for name in ("scipy.optimize", "scipy.special"):
-        try:
-            import_module(name)
-        except ImportError:
-            return

@@ -23,7 +23,6 @@ MADE_OF = (
     # package, what it does here, licence
     ("kivy", "Kivy", "MIT"),
     ("numpy", "NumPy", "BSD 3-Clause"),
-    ("scipy", "SciPy", "BSD 3-Clause"),
     ("plyer", "plyer", "MIT"),
 )
 

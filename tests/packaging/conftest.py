@@ -20,5 +20,5 @@ def tools(tmp_path_factory):
 
 @pytest.fixture(scope="session")
 def packed(tools, tmp_path_factory):
-    """The packing tool after it has packed the full profile, and the folder with what it packed."""
-    return tools.stage("full", tmp_path_factory.mktemp("full"))
+    """The packing tool after it has packed the lean profile, and the folder with what it packed."""
+    return tools.stage("lean", tmp_path_factory.mktemp("lean"))

@@ -18,7 +18,7 @@ TOP_LEVEL = {"core", "main.py", "mobileapp", "sitecustomize.py"}
 NEEDED_AT_RUN_TIME = {"py", "kv", "png", "wav", "ttf", "mo", "csv", "json", ""}
 
 
-def spec_of(tools, profile="full"):
+def spec_of(tools, profile="lean"):
     parsed = configparser.ConfigParser(interpolation=None, strict=True)
     parsed.optionxform = str
     parsed.read_string(tools.spec_text(profile))
@@ -69,12 +69,12 @@ def test_every_kind_of_file_of_the_packages_is_packed_or_known_to_be_left():
 
 
 def test_both_profiles_pack_the_same_files(tools, packed, tmp_path):
-    _tool, full = packed
-    _lean_tool, lean = tools.stage("lean", tmp_path)
+    _tool, lean = packed
+    _full_tool, full = tools.stage("full", tmp_path)
     assert tools.staged_files(lean) == tools.staged_files(full)
 
 
-def test_the_lean_profile_differs_by_scipy_alone(tools):
+def test_the_full_profile_differs_by_scipy_alone(tools):
     full, lean = (spec_of(tools, profile)["app"]["requirements"].split(",") for profile in ("full", "lean"))
     assert [name for name in full if name not in lean] == ["scipy"]
     assert [name for name in full if name != "scipy"] == lean
