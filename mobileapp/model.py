@@ -15,6 +15,7 @@ from kivy.properties import ObjectProperty, StringProperty
 from core.bench.readings import Readings, Ruling
 from core.bench.setup import Setup
 from core.bench.setup_file import setup_to_text
+from core.errors import BenchError
 from core.handover.session import ExportSession
 from core.recording.events import (
     BenchDescribed,
@@ -61,6 +62,7 @@ class Model(EventDispatcher):
         self._worker = LatestWorker(lambda call: Clock.schedule_once(lambda _dt: call(), 0))
         self.recorder = Recorder(device, self._records, self._worker, liked)
         self._answers: dict[int, Any] = {}
+        self._alone: dict[int, Any] = {}  # answers to runs that others are compared with
         self.notice = " ".join(self._opened.notes)
         opened = self._records.sessions()
         if opened:
@@ -202,8 +204,17 @@ class Model(EventDispatcher):
         self._worker.ask(topic, work, then, failed)
 
     def _answer_key(self, run: int) -> tuple[Any, ...]:
+        """All that the answer to a run comes from: its own record, and the versions of those that it is held
+        against."""
+        return *_own_key(self._records.run(run)), *((one.run, len(one.events)) for one in self._beside(run))
+
+    def _beside(self, run: int) -> list[Record]:
+        """The runs before one that it is compared with, as on the laptop."""
         record = self._records.run(run)
-        return record.setup, record.state.readings, record.state.rulings, record.state.start_s
+        own = exported(record, False, None)
+        before = self._records.runs(record.session)[: record.number - 1]
+        pairs = [(one, exported(one, False, None)) for one in before]
+        return [one for one, there in pairs if own and there and own.stands_beside(there)]
 
     def _known_answer(self, run: int) -> Any:
         known = self._answers.get(run)
@@ -216,12 +227,20 @@ class Model(EventDispatcher):
         if known is not None:
             then(known)
             return
-        setup, readings, rulings, start_s = key
+        own, beside = _own_key(self._record(run)), [(one.run, _own_key(one)) for one in self._beside(int(run))]
 
         def work() -> Any:
             from core.handover.recompute import answer_to
 
-            return answer_to(readings, setup, rulings, start_s)
+            earlier = []
+            for number_of, key_of in beside:
+                if self._alone.get(number_of, ((),))[0] != key_of:
+                    try:
+                        self._alone[number_of] = (key_of, answer_to(*key_of))
+                    except BenchError:
+                        self._alone[number_of] = (key_of, None)
+                earlier.append(self._alone[number_of][1])
+            return answer_to(*own, earlier=[one for one in earlier if one is not None])
 
         def keep(answer: Any) -> None:
             self._answers[int(run)] = (key, answer)
@@ -344,6 +363,10 @@ class Model(EventDispatcher):
     def close(self) -> None:
         self._worker.close()
         self._opened.close()
+
+
+def _own_key(record: Record) -> tuple[Any, ...]:
+    return record.state.readings, record.setup, record.state.rulings, record.state.start_s
 
 
 def _refusal() -> Exception:

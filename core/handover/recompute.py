@@ -41,16 +41,11 @@ def answer_to(
 
 
 def answers_to(session: ExportSession) -> list[Answer | BenchError]:
-    """The answer to each run, or the refusal of it. A run is compared with the runs before it in the session that
-    have an answer, are of its kind and were not discarded."""
+    """The answer to each run, or the refusal of it, held against the runs before it that stand beside it."""
     answers: list[Answer | BenchError] = []
     for run in session.runs:
         pairs = zip(session.runs, answers, strict=False)
-        earlier = [
-            answer
-            for other, answer in pairs
-            if isinstance(answer, Answer) and other.kind == run.kind and other.decision != "discard"
-        ]
+        earlier = [answer for other, answer in pairs if isinstance(answer, Answer) and run.stands_beside(other)]
         try:
             answers.append(answer_to(run.readings, run.setup, run.rulings, run.start_s, earlier))
         except BenchError as error:

@@ -41,6 +41,11 @@ class ExportRun:
     no_answer: str = ""
     true_h_W_m2K: float | None = None
 
+    def stands_beside(self, before: ExportRun) -> bool:
+        """Whether this run is compared with one before it in its session: of its kind, and not discarded.
+        Rehearsals are not, as the truth of each is drawn anew."""
+        return before.kind == self.kind != "rehearsal" and before.decision != "discard"
+
 
 @dataclass(frozen=True, slots=True)
 class ExportSession:
