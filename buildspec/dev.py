@@ -2,6 +2,7 @@
 
 python3 buildspec/dev.py app      make the environment, open the app with the demo session
 python3 buildspec/dev.py tests    the same with the test extras, then lint, types and the whole test suite
+python3 buildspec/dev.py optimised  the core's tests without asserts and docstrings, as the tablet runs the core
 python3 buildspec/dev.py lock     resolve the dependencies anew and write buildspec/locks
 python3 buildspec/dev.py wheel    build wheel and sdist, try both in empty environments
 python3 buildspec/dev.py stage    the files that the Android package would hold, by the packing tool's own code
@@ -14,6 +15,7 @@ from __future__ import annotations
 
 import argparse
 import hashlib
+import json
 import os
 import platform
 import shutil
@@ -38,6 +40,7 @@ SCREEN_LIBRARIES = {
     "X11": "libx11-6",
     "mtdev": "libmtdev1",
 }
+CORE_FOLDERS = ("bench_setup", "convection", "cooling", "judgement", "recording", "handover", "commands", "demo")
 HELPER_PROGRAMS = {"aapt": "aapt", "javac": "default-jdk-headless", "gcc": "gcc"}
 FRAMEWORK = Path("/usr/share/android-framework-res/framework-res.apk")
 MESA_DRIVERS = ("/usr/lib/*/dri/swrast_dri.so", "/usr/lib/*/dri/libdril_dri.so", "/usr/lib64/dri/swrast_dri.so")
@@ -199,30 +202,39 @@ def tests(words: list[str]) -> int:
     return run([interpreter, "-m", "pytest", "-q", "-n", "2", "--dist", "loadgroup", *words])
 
 
+def optimised(words: list[str]) -> int:
+    """The core's tests as the tablet runs the core: without its asserts and docstrings.
+
+    pytest turns the asserts of the tests themselves into plain raises, so these go on holding."""
+    interpreter = environment("test")
+    as_on_the_tablet = {**os.environ, "PYTHONOPTIMIZE": "2", "OPENBLAS_NUM_THREADS": "1"}
+    named = words or [f"tests/{name}" for name in CORE_FOLDERS]
+    return run([interpreter, "-m", "pytest", "-q", "-n", "2", *named], env=as_on_the_tablet)
+
+
 def lock(_words: list[str]) -> int:
-    """Resolve the dependencies anew in fresh environments and write the lock files."""
+    """Resolve the dependencies anew, as for an empty environment and without installing any, and write the locks."""
     LOCKS.mkdir(exist_ok=True)
     extras = tomllib.loads((ROOT / "pyproject.toml").read_text("utf-8"))["project"]["optional-dependencies"]
     building = ["setuptools>=77"]
-    for name, wanted in (
-        ("run", [*building, str(ROOT)]),
-        ("test", [*building, f"{ROOT}[test,report,android]"]),
-        ("android", extras["android"]),
-    ):
-        with tempfile.TemporaryDirectory() as scratch:
-            place = Path(scratch) / "env"
-            make_environment(place)
-            pip: list[str | Path] = [python_in(place), "-m", "pip", "--disable-pip-version-check"]
-            if run([*pip, "install", "-q", *wanted], quiet=True):
+    with tempfile.TemporaryDirectory() as scratch:
+        place = Path(scratch) / "env"
+        make_environment(place)
+        pip: list[str | Path] = [python_in(place), "-m", "pip", "--disable-pip-version-check"]
+        report = Path(scratch) / "report.json"
+        for name, wanted in (
+            ("run", [*building, str(ROOT)]),
+            ("test", [*building, f"{ROOT}[test,report,android]"]),
+            ("android", extras["android"]),
+        ):
+            words = ["install", "-q", "--dry-run", "--ignore-installed", "--report", report, *wanted]
+            if run([*pip, *words], quiet=True):
                 raise Stop("The dependencies could not be resolved: see pip's words above.")
-            frozen = subprocess.run(
-                [str(w) for w in [*pip, "freeze", "--all", "--exclude", "pip", "--exclude", "cooltally"]],
-                check=True,
-                text=True,
-                capture_output=True,
-            ).stdout
-        (LOCKS / f"{name}.txt").write_text(frozen)
-        print(f"{name}: {len(frozen.splitlines())} packages", flush=True)
+            found = [one["metadata"] for one in json.loads(report.read_text("utf-8"))["install"]]
+            lines = {one["name"].lower(): f"{one['name']}=={one['version']}\n" for one in found}
+            lines.pop("cooltally", None)
+            (LOCKS / f"{name}.txt").write_text("".join(lines[key] for key in sorted(lines)), encoding="utf-8")
+            print(f"{name}: {len(lines)} packages", flush=True)
     return 0
 
 
@@ -234,6 +246,7 @@ def beside(script: str, lock_name: str = "test") -> Callable[[list[str]], int]:
 COMMANDS: dict[str, Callable[[list[str]], int]] = {
     "app": app,
     "tests": tests,
+    "optimised": optimised,
     "lock": lock,
     "wheel": beside("release.py"),
     "stage": beside("android_staging.py"),
