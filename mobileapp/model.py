@@ -28,7 +28,6 @@ from core.recording.events import (
 from core.recording.opening import open_journal
 from mobileapp import preferences as kept_preferences
 from mobileapp import rehearsing
-from mobileapp.cautions import touch_safe_in_s
 from mobileapp.device.ports import Device
 from mobileapp.figures import number
 from mobileapp.outward import exported, taken_in
@@ -299,6 +298,8 @@ class Model(EventDispatcher):
         if not 0 <= since_s < FORGOTTEN_S:
             return None
         air_C = record.setup.air.temperature_C
+        from core.judgement.guidance import touch_safe_in_s
+
         left = touch_safe_in_s(rows[-1].reading_C, air_C, answer.time_constant_s)
         return None if left is None else max(0.0, left - since_s)
 

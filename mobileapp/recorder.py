@@ -120,14 +120,21 @@ class Recorder(EventDispatcher):
             return
 
         def work() -> Any:
+            from core.judgement.guidance import guide
             from core.judgement.judge import judge
+            from core.judgement.prediction import usual_end_C
 
-            return judge(readings, setup, warm=warm)
+            answer = judge(readings, setup, warm=warm)
+            if setup.recording.kind == "still-air":
+                return answer, None, None
+            end_C = usual_end_C(answer.fit.start_C, answer.asymptote_C)
+            return answer, guide(answer, setup, readings.reading_C[-1], end_C), end_C
 
-        def then(answer: Any) -> None:
+        def then(found: Any) -> None:
+            answer, guidance, end_C = found
             if self._running is running:
                 self._warm = answer.fit
-                self.live = LiveFit(answer, "", len(readings))
+                self.live = LiveFit(answer, "", len(readings), guidance, end_C)
 
         def failed(sentence: str) -> None:
             if self._running is running:

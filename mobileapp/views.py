@@ -3,9 +3,13 @@
 from __future__ import annotations
 
 from dataclasses import dataclass
+from typing import TYPE_CHECKING
 
 from core.bench.setup import Setup
 from core.judgement.answer import Answer
+
+if TYPE_CHECKING:
+    from core.judgement.guidance import Guidance
 
 
 @dataclass(frozen=True, slots=True)
@@ -42,11 +46,14 @@ class SessionView:
 
 @dataclass(frozen=True, slots=True)
 class LiveFit:
-    """The newest fit while a run goes on, or why there is none yet."""
+    """The newest fit while a run goes on, or why there is none yet; and what going on to `end_C` would bring, for a
+    run of which h is wanted."""
 
     answer: Answer | None
     waiting_for: str
     readings: int
+    guidance: Guidance | None = None
+    end_C: float | None = None
 
 
 @dataclass(frozen=True, slots=True)

@@ -13,12 +13,11 @@ from core.convection.flow import velocity_at_body
 from core.errors import NoAnswer
 from core.judgement.budget import budget_from
 from core.judgement.checks_bench import BIOT_LUMPED
-from core.judgement.prediction import Planned, Promise, promise
+from core.judgement.prediction import Planned, Promise, promise, usual_end_C
 from core.judgement.published import middle
 from core.judgement.relation import Anchor, film_air, mid_air_C, radiation_W_m2K
 
 START_C = 90.0  # common practice: out of boiling water, 90 to 95 °C
-SPAN_RATIO = 6.7  # common practice: 90 down to 33 °C in air of 23 °C
 WARMER_THAN_AIR_K = 40.0
 TAPS_PER_S = 1.5  # common practice: a hand that only taps follows three changes in two seconds, not more
 
@@ -68,7 +67,7 @@ def expect(setup: Setup) -> Expected:
     air_C = mid_air_C(setup)
     start_C = max(START_C, air_C + WARMER_THAN_AIR_K)
     first_K = start_C - air_C
-    last_K = first_K / SPAN_RATIO
+    last_K = usual_end_C(start_C, air_C) - air_C
     body_C = air_C + (first_K - last_K) / log(first_K / last_K)
     expected = tuple(expected_for(setup, body_C))
     if not expected:

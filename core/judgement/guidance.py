@@ -16,6 +16,7 @@ from core.judgement.propagation import Vector, coverage_factor, effective_dof
 SOON_s = 30.0
 ENOUGH_GAIN = 0.05  # of U95: going on is not worth it below this
 FEWEST_TO_COMPARE = 6  # readings, from which on what they told is compared with what was expected of them
+MENDED_BY_GOING_ON = ("temperature span", "number of readings")
 KEENEST = 3.0  # times: further off no comparison is believed
 
 BURN_THRESHOLDS_C = ((1.0, 65.0), (10.0, 56.0), (60.0, 51.0), (600.0, 48.0), (28800.0, 43.0))
@@ -27,9 +28,9 @@ band: ISO 13732-1:2006, figures and table for uncoated metal; values from memory
 class Guidance:
     """Expanded uncertainty of h, relative, if the run is stopped at three moments; seconds to the planned end and
     until the body is touch-safe, both estimates. `enough` says that going on to the end would bring less than a
-    twentieth. For a run in still air, of which h is not what is wanted, nothing is foretold: the three are the same,
-    and it is never enough before the planned end. `touch_safe_s` is None where the air is too warm for it ever to
-    be."""
+    twentieth, and that the readings so far span enough for the verdict. For a run in still air, of which h is not
+    what is wanted, nothing is foretold: the three are the same, and it is never enough before the planned end.
+    `touch_safe_s` is None where the air is too warm for it ever to be."""
 
     U95_now_rel: float
     U95_soon_rel: float
@@ -69,10 +70,15 @@ def guide(answer: Answer, setup: Setup, shown_C: float, planned_end_C: float) ->
         U95_now_rel=now_rel,
         U95_soon_rel=soon_rel,
         U95_end_rel=end_rel,
-        enough=forced and end_rel > (1.0 - ENOUGH_GAIN) * now_rel,
+        enough=forced and end_rel > (1.0 - ENOUGH_GAIN) * now_rel and _stands_when_ended(answer),
         end_in_s=log(now / end) / rate,
         touch_safe_s=touch_safe_in_s(shown_C, air, answer.time_constant_s),
     )
+
+
+def _stands_when_ended(answer: Answer) -> bool:
+    """Whether the checks that only going on can mend are good already."""
+    return all(check.outcome == "good" for check in answer.checks if check.name in MENDED_BY_GOING_ON)
 
 
 @dataclass(frozen=True, slots=True)

@@ -16,6 +16,14 @@ _HEARD = 0.3  # of a refresh: a hand steadier than this lets the fit hear the di
 _NARROWEST = 0.02  # blur below this share of the width is not believed: no edge is sharper
 
 
+SPAN_RATIO = 6.7  # of first and last excess over the air; common practice: 90 down to 33 °C in air of 23 °C
+
+
+def usual_end_C(first_C: float, air_C: float) -> float:
+    """Where a run from a first temperature [°C] usually ends, in air of a temperature [°C]."""
+    return air_C + (first_C - air_C) / SPAN_RATIO
+
+
 @dataclass(frozen=True, slots=True)
 class Planned:
     """A cooling still to come: decay rate 1/s, first and last excess over the air [K]."""

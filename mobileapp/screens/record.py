@@ -10,7 +10,8 @@ from kivy.properties import BooleanProperty, ObjectProperty, StringProperty
 from mobileapp.device.ports import Stamp
 from mobileapp.figures import clock_time, number, percent, with_uncertainty
 from mobileapp.navigation import Page
-from mobileapp.views import Felt, PadView
+from mobileapp.trace import trace
+from mobileapp.views import Felt, LiveFit, PadView
 from mobileapp.widgets import basics, digits, hold, pad, simulated  # noqa: F401  the .kv of this screen uses them
 from mobileapp.widgets.basics import MainPress
 from mobileapp.widgets.digits import ERASE, SKIP
@@ -34,6 +35,8 @@ class RecordScreen(Page):
     title = StringProperty("")
     clock_text = StringProperty("0:00")
     live_text = StringProperty("")
+    guide_text = StringProperty("")
+    enough = BooleanProperty(False)
     start_text = StringProperty("")
     body_marked = BooleanProperty(False)
     fan_marked = BooleanProperty(False)
@@ -136,12 +139,32 @@ class RecordScreen(Page):
 
     def _paint_live(self, *_args: Any) -> None:
         live = self.model.recorder.live
+        self.enough = live.guidance is not None and live.guidance.enough
+        self.guide_text = self._guide_words(live)
+        trace("guided", text=self.guide_text, readings=live.readings)
         if live.answer is None:
             self.live_text = say(live.waiting_for)
             return
         value, spread = with_uncertainty(live.answer.h_W_m2K, live.answer.h_U95_W_m2K)
         share = percent(live.answer.h_U95_W_m2K / live.answer.h_W_m2K, 1)
         self.live_text = f"h {value} ± {spread} W/(m²·K)  ({share})"
+
+    def _guide_words(self, live: LiveFit) -> str:
+        """What U95 would become if the run were stopped later, or that going on is not worth it."""
+        guidance = live.guidance
+        if guidance is None or live.end_C is None:
+            return ""
+        there = f"{number(live.end_C, 0)} °C"
+        if guidance.end_in_s <= 0.0:
+            return _("Far enough: {there} is where a run usually ends.").format(there=there)
+        if guidance.enough:
+            return _("Enough: going on to {there} would hardly sharpen h.").format(there=there)
+        return _("± {soon} in 30 s, ± {end} at {there} in {time}").format(
+            soon=percent(guidance.U95_soon_rel, 1),
+            end=percent(guidance.U95_end_rel, 1),
+            there=there,
+            time=clock_time(guidance.end_in_s),
+        )
 
     def _tick(self, _dt: float) -> None:
         view = self.view

@@ -83,8 +83,22 @@ def test_guidance_costs_less_than_one_frame(run):
 
 def test_enough_is_said_where_the_material_decides(run):
     setup = replace(SETUP, body=replace(SETUP.body, heat_capacity_u_rel=0.03))
-    most = cut(run, 45)
+    most = cut(run, 52)
     assert guide(judge(most, setup), setup, most.reading_C[-1], run.reading_C[-1]).enough
+
+
+def test_enough_is_not_said_before_the_readings_span_enough_for_the_verdict(run):
+    """However little going on would sharpen h: a run of a few kelvins does not stand."""
+    setup = replace(SETUP, body=replace(SETUP.body, heat_capacity_u_rel=0.03))
+    told = {}
+    for count in range(12, len(run), 6):
+        answer = judge(cut(run, count), setup)
+        outcome = {check.name: check.outcome for check in answer.checks}
+        said = guide(answer, setup, run.reading_C[count - 1], run.reading_C[-1]).enough
+        told.setdefault(outcome["temperature span"] == "good", []).append(said)
+    assert len(told[False]) > 2
+    assert not any(told[False])
+    assert all(told[True])
 
 
 def test_touch_safe_times_follow_the_thresholds():

@@ -1,6 +1,7 @@
 """The main job in a real window, driven from outside: rehearse, tap, read h, hand over, and fit the CSV again."""
 
 import json
+import re
 import subprocess
 import sys
 from pathlib import Path
@@ -47,6 +48,14 @@ def test_a_tap_is_stamped_when_it_was_made(rehearsed):
     assert errors_s[len(errors_s) // 2] < 0.002
     for one, moment in zip(counted, sent, strict=True):
         assert moment - 0.001 <= one["stamp"] <= one["t"]
+
+
+def test_what_going_on_would_bring_stands_beside_the_live_h(rehearsed):
+    """From the first fit on a promise for half a minute and for the end, and at last that it is enough."""
+    app, _sent, _answer = rehearsed
+    told = [one["text"] for one in app.named("guided") if one["text"]]
+    assert re.fullmatch(r"± [\d.]+.% in 30 s, ± [\d.]+.% at \d\d °C in \d+:\d\d", told[0])
+    assert told[-1].startswith(("Enough", "Far enough"))
 
 
 def test_h_lies_within_its_uncertainty_of_the_truth(rehearsed):
