@@ -248,6 +248,23 @@ class Model(EventDispatcher):
 
         self.ask(f"answer {run}", work, keep, failed)
 
+    def ask_stem_loss(self, answer: Any, then: Then, failed: Failed) -> None:
+        """What holder and stem carry off, out of the answer to a run in still air."""
+
+        def work() -> Any:
+            from core.judgement.stem import stem_loss
+
+            return stem_loss(answer.fit, answer.setup)
+
+        self.ask("stem loss", work, then, failed)
+
+    def adopt_stem_loss(self, stem: Any) -> None:
+        """The bench takes over a measured stem loss with its uncertainty."""
+        setup = self.session.setup if self.session else None
+        if setup is not None:
+            loss, u = float(f"{stem.loss_W_K:.4g}"), float(f"{stem.u_W_K:.3g}")
+            self.save_setup(replace(setup, body=replace(setup.body, stem_loss_W_K=loss, stem_loss_u_W_K=u)))
+
     def _answered(self, _answer: Any) -> None:
         """An answer of the list has come; once it is the last one, the next speed can be advised."""
         if self.session and all(run.open or run.h_W_m2K is not None for run in self.session.runs):

@@ -2,7 +2,7 @@
 
 from __future__ import annotations
 
-from typing import Any
+from typing import TYPE_CHECKING, Any
 
 from kivy.clock import Clock
 from kivy.properties import BooleanProperty, StringProperty
@@ -15,6 +15,9 @@ from mobileapp.widgets import badge, basics  # noqa: F401  the .kv of this scree
 from mobileapp.widgets.badge import verdict_word
 from mobileapp.widgets.basics import PlainPress
 from mobileapp.words import _, later, say
+
+if TYPE_CHECKING:
+    from core.judgement.stem import StemLoss
 
 REASONS = (
     later("A slip of mine"),
@@ -41,6 +44,8 @@ class AnswerScreen(Page):
     rehearsal = BooleanProperty(False)
     adoptable = BooleanProperty(False)
     safe_words = StringProperty("")
+    stem_words = StringProperty("")
+    stem_adoptable = BooleanProperty(False)
     asking_reason = BooleanProperty(False)
 
     def arrive(self, run: str = "", **_aim: Any) -> None:
@@ -74,7 +79,8 @@ class AnswerScreen(Page):
         self.has_answer = False
         self.h_text = self.u_text = self.side_words = ""
         self.verdict, self.verdict_text = "none", _("Fitting …")
-        self.reason = self.truth_words = ""
+        self.reason = self.truth_words = self.stem_words = ""
+        self.stem_adoptable = False
         self.adoptable = False
 
     def _decided(self, *_args: Any) -> None:
@@ -112,6 +118,8 @@ class AnswerScreen(Page):
         parts.append(f"U95 {percent(answer.h_U95_W_m2K / answer.h_W_m2K, 1)}")
         self.side_words = "   ".join(parts)
         self._show_truth(answer)
+        if answer.setup.recording.kind == "still-air":
+            self.model.ask_stem_loss(answer, self._show_stem, self._refused_stem)
         trace(
             "answer",
             run=self.run,
@@ -127,6 +135,23 @@ class AnswerScreen(Page):
         self.verdict, self.verdict_text = "none", _("No answer")
         self.reason = say(sentence)
         trace("no answer", run=self.run, sentence=sentence)
+
+    def _show_stem(self, stem: StemLoss) -> None:
+        """What a run in still air is made for."""
+        self._stem = stem
+        value, spread = with_uncertainty(1e3 * stem.loss_W_K, 1e3 * stem.U95_W_K)
+        self.stem_words = _("Holder and stem carry off {value} ± {spread} mW/K.").format(value=value, spread=spread)
+        self.stem_adoptable = stem.loss_W_K > 0.0
+        trace("stem", run=self.run, loss_W_K=stem.loss_W_K, u_W_K=stem.u_W_K)
+
+    def _refused_stem(self, sentence: str) -> None:
+        self.stem_words = say(sentence)
+
+    def adopt_stem(self) -> None:
+        """Put the measured stem loss into the bench."""
+        self.model.adopt_stem_loss(self._stem)
+        self.stem_adoptable = False
+        self.stem_words += "\n" + _("The bench has taken it over, with its uncertainty.")
 
     def _show_truth(self, answer: Answer | None = None) -> None:
         if not self.rehearsal:

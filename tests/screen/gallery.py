@@ -25,8 +25,8 @@ from typing import Any
 ROOT = Path(__file__).resolve().parents[2]
 SCREENS = (
     "home-empty", "home", "bench-empty", "bench", "before", "rehearsal", "after", "answer", "answer-look",
-    "answer-rehearsal", "answer-reason", "detail", "series", "handover", "settings", "intake", "record-waiting",
-    "record", "record-refused", "record-number", "record-beat", "record-question", "record-rehearsal",
+    "answer-rehearsal", "answer-reason", "answer-still", "detail", "series", "handover", "settings", "intake",
+    "record-waiting", "record", "record-refused", "record-number", "record-beat", "record-question", "record-rehearsal",
 )  # fmt: skip
 SETTLE_FRAMES = 10
 
@@ -254,6 +254,8 @@ class Gallery:
                 page.reason = (
                     "The first seconds do not follow the curve: start tapping later, or let the fan run up first."
                 )
+            if state == "still":
+                page.stem_words, page.stem_adoptable = "Holder and stem carry off 20.3 ± 1.8 mW/K.", True
             if state == "reason":
                 page.ask_reason()
             self.settle()

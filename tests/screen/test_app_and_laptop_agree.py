@@ -10,6 +10,7 @@ from core.bench.setup import Recording
 from core.bench.setup_file import setup_to_text
 from core.cooling.simulator import Truth, simulate
 from core.handover.recompute import answers_to
+from core.judgement.judge import judge
 from core.recording.events import Decided, RunEnded, RunOpened, Typed
 from mobileapp.device.clock import SystemClock
 from mobileapp.device.haptics import NoHaptics
@@ -43,6 +44,22 @@ def model(request, tmp_path):
         model._records.keep_all(session, run, [*events, RunEnded(1e3)])
     yield model
     model.close()
+
+
+def test_the_stem_loss_of_a_still_air_run_is_taken_to_the_bench(model):
+    unsaid = replace(BENCH, recording=Recording("change", kind="still-air"))
+    still = replace(unsaid, body=replace(BENCH.body, stem_loss_W_K=0.02))
+    readings = simulate(Truth(still, 9.0, 86.0, 40.0), 1)
+    model.save_setup(unsaid)
+    found = []
+    model.ask_stem_loss(judge(readings, unsaid), found.append, pytest.fail)
+    end = time.monotonic() + 60.0
+    while not found and time.monotonic() < end:
+        Clock.tick()
+    model.adopt_stem_loss(found[0])
+    body = model.session.setup.body
+    assert body.stem_loss_W_K == pytest.approx(0.02, abs=2.5 * body.stem_loss_u_W_K)
+    assert 0.0 < body.stem_loss_u_W_K < 0.01
 
 
 def answered(model):
