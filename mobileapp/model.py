@@ -15,7 +15,7 @@ from kivy.properties import ObjectProperty, StringProperty
 from core.bench.readings import Readings, Ruling
 from core.bench.setup import Setup
 from core.bench.setup_file import setup_to_text
-from core.errors import BenchError
+from core.errors import BenchError, NoAnswer
 from core.handover.session import ExportSession
 from core.recording.events import (
     BenchDescribed,
@@ -29,7 +29,8 @@ from core.recording.opening import open_journal
 from mobileapp import preferences as kept_preferences
 from mobileapp import rehearsing
 from mobileapp.device.ports import Device
-from mobileapp.figures import number
+from mobileapp.figures import clock_time, number
+from mobileapp.heating import Heating
 from mobileapp.outward import exported, taken_in
 from mobileapp.preferences import Preferences
 from mobileapp.recorder import FORGOTTEN_S, Recorder
@@ -56,6 +57,8 @@ class Model(EventDispatcher):
         self.device = device
         self.preferences = liked
         self.ticked: set[str] = set()
+        self.heating = Heating(device.clock)
+        self._paused_s: float | None = None
         self._opened = open_journal(device.data, wall_time=device.clock.wall_iso())
         self._records = Records(self._opened.journal)
         self._worker = LatestWorker(lambda call: Clock.schedule_once(lambda _dt: call(), 0))
@@ -292,7 +295,7 @@ class Model(EventDispatcher):
         def work() -> Any:
             from core.handover.recompute import law_over
 
-            return law_over(session, [run.answer or _refusal() for run in session.runs])
+            return law_over(session, [run.answer or NoAnswer("It has no answer.") for run in session.runs])
 
         self.ask("series", work, then, failed)
 
@@ -336,6 +339,8 @@ class Model(EventDispatcher):
     def end_run(self) -> str | None:
         """The run is over; returns it, or None where there is nothing to answer."""
         run = self.recorder.end()
+        rows = self._record(run).state.rows if run else ()
+        self.heating.end(rows[0].stamp_s if rows else None)
         self._refresh()
         return run
 
@@ -371,12 +376,15 @@ class Model(EventDispatcher):
     def pause(self) -> None:
         """The app goes to the background: stamps heard by now belong to nothing that comes later."""
         self.device.stamps.forget()
+        self._paused_s = self.device.clock.now_s()
 
     def resume(self) -> None:
         """A run is never silently continued after the app was away."""
         self.device.stamps.forget()
-        if self.recorder.pad is not None:
-            self.notice = _("The app was away. The run goes on; readings missed meanwhile are simply missing.")
+        if self.recorder.pad is not None and self._paused_s is not None:
+            away = clock_time(self.device.clock.now_s() - self._paused_s)
+            gone = _("The app was away for {time}. The run goes on; readings missed meanwhile are simply missing.")
+            self.notice = gone.format(time=away)
 
     def close(self) -> None:
         self._worker.close()
@@ -385,9 +393,3 @@ class Model(EventDispatcher):
 
 def _own_key(record: Record) -> tuple[Any, ...]:
     return record.state.readings, record.setup, record.state.rulings, record.state.start_s
-
-
-def _refusal() -> Exception:
-    from core.errors import NoAnswer
-
-    return NoAnswer("It has no answer.")

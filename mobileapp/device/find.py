@@ -5,6 +5,7 @@ from __future__ import annotations
 import os
 from pathlib import Path
 
+from mobileapp.device.battery import find_battery
 from mobileapp.device.clock import SystemClock
 from mobileapp.device.haptics import find_haptics
 from mobileapp.device.ports import Device
@@ -34,5 +35,6 @@ def find_device(data: Path) -> Device:
         sounds=sounds,
         screen=WindowScreen(),
         data=data,
+        battery=find_battery(on_android()),
         missing=tuple(missing),
     )

@@ -2,9 +2,11 @@
 
 from __future__ import annotations
 
-from dataclasses import dataclass
+from dataclasses import dataclass, field
 from pathlib import Path
 from typing import Any, Protocol
+
+from mobileapp.device.battery import NoBattery
 
 
 @dataclass(frozen=True, slots=True)
@@ -74,6 +76,13 @@ class Screen(Protocol):
     def keep_on(self, on: bool) -> None: ...
 
 
+class Battery(Protocol):
+    """The charge that is left."""
+
+    def percent_left(self) -> float | None:
+        """Charge in per cent; None while it is being charged, or where it is not known."""
+
+
 class Downloads(Protocol):
     """The folder that a laptop sees."""
 
@@ -91,4 +100,5 @@ class Device:
     sounds: Sounds
     screen: Screen
     data: Path
+    battery: Battery = field(default_factory=NoBattery)
     missing: tuple[str, ...] = ()

@@ -21,6 +21,7 @@ from mobileapp.words import _, say
 
 WAYS = VELOCITIES
 ASKED_AGAIN_S = 0.4
+HEATING_EVERY_S = 0.5
 
 
 class BeforeScreen(Page):
@@ -34,6 +35,8 @@ class BeforeScreen(Page):
     mode = StringProperty("change")
     ticked_all = BooleanProperty(False)
     choosing_way = BooleanProperty(False)
+    heating_words = StringProperty("")
+    heating = BooleanProperty(False)
 
     def __init__(self, **options: Any) -> None:
         super().__init__(**options)
@@ -48,6 +51,23 @@ class BeforeScreen(Page):
         self._build_entries()
         self._build_cautions()
         self._ask()
+        self._heat()
+        self._heating_clock = Clock.schedule_interval(self._heat, HEATING_EVERY_S)
+
+    def leave(self) -> None:
+        self._heating_clock.cancel()
+
+    # ------------------------------------------------------------------ the body in the water
+
+    def begin_heating(self) -> None:
+        self.model.heating.begin()
+        self._heat()
+
+    def _heat(self, *_args: Any) -> None:
+        clock = self.model.heating
+        self.heating, self.heating_words = clock.goes_on, clock.words()
+        if clock.is_due() and self.model.preferences.click:
+            self.model.device.sounds.play("done")
 
     # ------------------------------------------------------------------ what changes from run to run
 

@@ -23,6 +23,8 @@ from mobileapp.words import _, say
 PAD_KEYS = {32, 13, 271, 273, 274, 275, 276, 280, 281}  # space, enter, keypad enter, arrows, page up and down
 ERASE_KEY = 8
 STATUS_PERIOD_S = 0.25
+BATTERY_EVERY_S = 60.0
+LOW_BATTERY_PERCENT = 15.0
 
 
 class RecordScreen(Page):
@@ -66,11 +68,15 @@ class RecordScreen(Page):
         self.model.watch_screen(True)
         self.model.bind(notice=self._told)
         self._told()
+        self._battery_told = False
+        self._battery = Clock.schedule_interval(self._look_at_battery, BATTERY_EVERY_S)
+        self._look_at_battery()
 
     def leave(self) -> None:
         self.model.recorder.unbind(pad=self._paint, live=self._paint_live, beat=self._paint_beat)
         if self._ticker is not None:
             self._ticker.cancel()
+        self._battery.cancel()
         self.ids.display.source = None
         self.model.watch_screen(False)
         self.model.unbind(notice=self._told)
@@ -85,8 +91,16 @@ class RecordScreen(Page):
     def _told(self, *_args: Any) -> None:
         """What happened while the app was away stands on the pad for a moment."""
         if self.model.notice:
-            self.ids.pad.refuse(self.model.notice)
+            self.ids.pad.tell(self.model.notice)
             self.model.notice = ""
+
+    def _look_at_battery(self, *_args: Any) -> None:
+        """A charge that runs out is told once a run."""
+        left = self.model.device.battery.percent_left()
+        if left is not None and left <= LOW_BATTERY_PERCENT and not self._battery_told:
+            self._battery_told = True
+            low = _("Battery at {left}: plug it in. Every tap so far is kept.")
+            self.ids.pad.tell(low.format(left=percent(left / 100.0, 0)))
 
     # ------------------------------------------------------------------ what is painted
 

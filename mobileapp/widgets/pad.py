@@ -22,6 +22,7 @@ from mobileapp.widgets import basics  # noqa: F401  the .kv of this widget uses 
 
 FLASH_S = 0.11
 REFUSED_S = 0.45
+TOLD_S = 8.0
 USED_BUTTONS = (None, "left")
 
 
@@ -69,6 +70,7 @@ class Pad(PadTouch, FloatLayout):
         look.bind(palette_name=self.restyle, text_scale=self.restyle)
         self._end_flash = Clock.create_trigger(self._dark, FLASH_S)
         self._end_refusal = Clock.create_trigger(self._forget_refusal, REFUSED_S)
+        self._end_notice = Clock.create_trigger(self._forget_refusal, TOLD_S)
 
     def _paint_heat(self, *_args: Any) -> None:
         """The colour of each level: from cool at the bottom through warm to hot at the top."""
@@ -93,9 +95,16 @@ class Pad(PadTouch, FloatLayout):
 
     def refuse(self, why: str) -> None:
         """Grey, with the reason, for a touch that does not count."""
+        self._end_notice.cancel()
         self.refusal = why
         self._end_refusal.cancel()
         self._end_refusal()
+
+    def tell(self, notice: str) -> None:
+        """The same look for something to be read; the next tap that counts takes it away."""
+        self.refuse(notice)
+        self._end_refusal.cancel()
+        self._end_notice()
 
     def _dark(self, *_args: Any) -> None:
         self.flash = False
