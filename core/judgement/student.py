@@ -1,4 +1,4 @@
-"""Student's t and chi-square: the two distributions that judgement needs, without SciPy on the path."""
+"""Student's t and chi-square: the two distributions that judgement needs, with NumPy and the standard library alone."""
 
 from __future__ import annotations
 
